@@ -1,0 +1,5 @@
+"""The contract between Python and kernels: named tuples of arrays of one fixed type each, and `pack`, which makes them."""
+
+from renderer.arrays.packing import pack
+
+__all__ = ["pack"]
