@@ -133,11 +133,16 @@ class Emission:
 class Shape:
     """A built-in shape: `kind` and its sizes by name, lengths in metres, angles in degrees.
 
-    box: size (x, y, z) centred; sphere: radius; cylinder: radius, height (along y, centred), segments;
-    lens: radius_front, radius_back, thickness, diameter (along z); prism: apex_deg, side, length (ridge along z);
-    tank: size, wall, fill (0..1 of the inner height): the glass only, see `filling`;
-    water_surface: size (x, z), cells (nx, nz), waves ((amplitude, wavelength, direction_deg, phase_deg), ...);
-    rectangle: size (x, y) facing +z; disc: radius, segments, facing +z.
+    All are about their own origin. box: size (x, y, z); sphere: radius; cylinder (also called rod): radius, height (along y),
+    segments; lens: radius_front, radius_back (positive bulges, negative is hollow, 0 is flat), thickness (of its middle),
+    diameter; along z, front towards +z; prism: apex_deg, side, length (ridge along z, up); tank: outer size (x, y, z), wall,
+    fill (0..1 of the inner height), open towards +y; bowl: outer radius, wall, fill (0..1 of the inner depth), half a
+    spherical shell with its rim level at y = 0, open towards +y. A vessel's shape is its glass only; what stands in it is a
+    second object of kind tank_filling or bowl_filling with the same sizes, which reaches half the wall into the glass
+    and so needs a lower priority than the glass. water_surface: size (x, z), cells (nx, nz), waves ((amplitude,
+    wavelength, direction_deg clockwise from -z seen from above, phase_deg), ...) added up, facing +y, and depth (0 leaves it
+    open, more closes it to a block with a flat bottom at y = -depth); rectangle: size (x, y) facing +z; disc: radius,
+    segments, facing +z. Lengths may be 0 only where this says so.
     """
 
     kind: str
