@@ -7,6 +7,7 @@ import json
 import struct
 from pathlib import Path
 from typing import Any
+from urllib.parse import unquote
 
 from renderer.base.errors import InputError
 from renderer.geometry.limits import MAX_FILE_BYTES, MAX_HEADER_BYTES, MAX_NODE_DEPTH, MAX_PARTS
@@ -26,7 +27,9 @@ def read_gltf(path: Path) -> tuple[dict[str, Any], bytes]:
     with path.open("rb") as stream:
         if path.suffix.lower() == ".gltf":
             if check_size(path) > MAX_HEADER_BYTES:
-                raise refuse(path, "the glTF file is too large", f"at most {MAX_HEADER_BYTES // 1024**2} MB beside its buffers")
+                raise refuse(
+                    path, "the glTF file is too large", f"at most {MAX_HEADER_BYTES // 1024**2} MB beside its buffers"
+                )
             return parse(path, stream.read()), b""
         head = stream.read(20)
         if len(head) < 20 or head[:4] != MAGIC:
@@ -57,13 +60,17 @@ def check_gltf(path: Path, header: dict[str, Any], rest: bytes) -> None:
         if any(not name.startswith("KHR_materials_") and name != "KHR_texture_transform" for name in required):
             raise refuse(path, f"the glTF file needs {', '.join(required)}, which is not read", "plain triangles")
         if any("EXT_mesh_gpu_instancing" in node.get("extensions", {}) for node in header.get("nodes", [])):
-            raise refuse(path, "the glTF file places meshes by EXT_mesh_gpu_instancing, which is not read", "one node a copy")
+            raise refuse(
+                path, "the glTF file places meshes by EXT_mesh_gpu_instancing, which is not read", "one node a copy"
+            )
         check_buffers(path, header, rest)
         check_accessors(path, header)
         check_primitives(path, header)
         check_nodes(path, header)
     except (KeyError, IndexError, TypeError, ValueError, AttributeError) as error:
-        raise refuse(path, f"the glTF file breaks its own format ({type(error).__name__}: {error})", "glTF 2.0") from error
+        raise refuse(
+            path, f"the glTF file breaks its own format ({type(error).__name__}: {error})", "glTF 2.0"
+        ) from error
 
 
 def check_buffers(path: Path, header: dict[str, Any], rest: bytes) -> None:
@@ -89,8 +96,6 @@ def check_buffers(path: Path, header: dict[str, Any], rest: bytes) -> None:
 
 def beside(path: Path, uri: str, size: int) -> None:
     """A buffer's file must lie in the folder of the glTF file, or below it."""
-    from urllib.parse import unquote
-
     folder = path.parent.resolve()
     target = (folder / unquote(uri)).resolve()
     if not target.is_relative_to(folder):
@@ -131,7 +136,9 @@ def check_primitives(path: Path, header: dict[str, Any]) -> None:
                 if at is not None and accessors[at]["componentType"] != FLOAT:
                     raise refuse(path, f"the glTF file stores {name} as whole numbers, which is not read", "floats")
                 if at is not None and "sparse" in accessors[at]:
-                    raise refuse(path, f"the glTF file stores {name} as a sparse accessor, which is not read", "plain arrays")
+                    raise refuse(
+                        path, f"the glTF file stores {name} as a sparse accessor, which is not read", "plain arrays"
+                    )
             if "bufferView" not in accessors[primitive["attributes"]["POSITION"]]:
                 raise refuse(path, "the glTF file has compressed meshes, which are not read", "plain arrays")
 
@@ -151,13 +158,19 @@ def check_nodes(path: Path, header: dict[str, Any]) -> None:
         if seen > len(nodes):
             break
         level = [child for at in level for child in nodes[at].get("children", [])]
-    raise refuse(path, "the nodes of the glTF file go round in a circle, or too deep", f"at most {MAX_NODE_DEPTH} levels")
+    raise refuse(
+        path, "the nodes of the glTF file go round in a circle, or too deep", f"at most {MAX_NODE_DEPTH} levels"
+    )
 
 
 def without_pictures(header: dict[str, Any]) -> dict[str, Any]:
     """A copy that names no pictures, and one plain material, which texture coordinates hang on in the reader."""
     bare = {key: value for key, value in header.items() if key not in ("images", "textures", "samplers", "materials")}
     bare["materials"] = [{}]
+    bare["buffers"] = [
+        {**buffer, "uri": unquote(buffer["uri"])} if not buffer.get("uri", "data:").startswith("data:") else buffer
+        for buffer in header.get("buffers", [])
+    ]
     bare["cameras"] = []
     bare["nodes"] = [{key: value for key, value in node.items() if key != "camera"} for node in header.get("nodes", [])]
     bare["meshes"] = [

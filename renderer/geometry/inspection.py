@@ -18,6 +18,7 @@ from renderer.geometry.normals import BLOCK, face_normals
 from renderer.geometry.positions import Floats, Ids, Indices, position_groups, rounded_groups
 
 Vector = tuple[float, float, float]
+Mask = npt.NDArray[np.bool_]
 
 DEGENERATE = 1e-8  # height over longest edge below which a triangle counts as degenerate
 WELD = 1e-5  # share of the mesh's diagonal within which vertices are tried as one when the mesh is open
@@ -28,8 +29,9 @@ class MeshReport:
     """Facts of a mesh, in its own space.
 
     `watertight`: every edge is shared by an even number of triangles. `consistent`: every edge is run through as often
-    one way as the other, open edges apart. `outward`: the signed volume is positive (only of meaning when watertight and consistent).
-    `n_inside_out`: shells that are wound inward and do not lie inside the bounds of an outward one (those are hollows).
+    one way as the other, open edges apart. `outward`: watertight, consistent, and of positive signed volume.
+    `n_inside_out`: closed shells that are wound inward and do not lie inside the bounds of a closed outward one (those
+    are hollows).
     `n_open_edges`, edges with an odd number of triangles; `n_crowded_edges`, with more than two; `n_flipped_edges`,
     with two or more triangles that do not balance. `n_normals_against`: triangles' corners whose stored normal
     points to the other side of its triangle. `n_non_finite`: vertices that are not numbers; the other facts leave out
@@ -107,7 +109,7 @@ def joined(assets: Sequence[TriangleAsset]) -> TriangleAsset:
 
 def report(mesh: TriangleAsset) -> MeshReport:
     """All the facts of one mesh."""
-    finite = np.isfinite(mesh.vertices_m).all(axis=1)
+    finite: Mask = np.asarray(np.isfinite(mesh.vertices_m).all(axis=1))
     faces = mesh.faces if finite.all() else mesh.faces[finite[mesh.faces].all(axis=1)]
     vertices = np.where(finite[:, None], mesh.vertices_m, 0.0) if not finite.all() else mesh.vertices_m
     group, first = position_groups(vertices)
@@ -116,7 +118,7 @@ def report(mesh: TriangleAsset) -> MeshReport:
     label = component_labels(corners, len(first))
     names, volumes, low, high, area, degenerate = shells(vertices, faces, label[corners[:, 0]])
     watertight = len(faces) > 0 and len(open_at) == 0
-    closed = ~np.isin(names, label[open_at])
+    closed = np.isin(names, label[open_at], invert=True)
     return MeshReport(
         n_vertices=len(mesh.vertices_m),
         n_faces=len(mesh.faces),

@@ -1,4 +1,4 @@
-"""Meshes from PLY, OBJ, STL, GLB and glTF files, through trimesh, as they stand in the file: nothing merged or repaired."""
+"""Meshes from PLY, OBJ, STL, GLB and glTF files, through trimesh, as they stand in the file: nothing repaired."""
 
 from __future__ import annotations
 
@@ -42,7 +42,9 @@ def load_parts(
         used = part.asset.vertices_m
         if not np.isfinite(used).all():
             bad = int((~np.isfinite(used).all(axis=1)).sum())
-            raise refuse(path, f"{bad:,} of {len(used):,} vertices of the mesh are not finite numbers", "finite numbers")
+            raise refuse(
+                path, f"{bad:,} of {len(used):,} vertices of the mesh are not finite numbers", "finite numbers"
+            )
     return parts
 
 
@@ -54,7 +56,9 @@ def read_parts(path: Path, nodes: tuple[str, ...], metres_per_unit: float, smoot
         known = {name for _, names, _ in entries for name in names}
         missing = ", ".join(nodes)
         expected = f"one of {', '.join(sorted(known)[:8])}" if known else "named nodes"
-        raise InputError(Fault(f'the mesh file has no part named "{missing}"', str(path), expected, nearest_name(missing, known)))
+        raise InputError(
+            Fault(f'the mesh file has no part named "{missing}"', str(path), expected, nearest_name(missing, known))
+        )
     assets: dict[int, TriangleAsset] = {}
     parts = []
     for raw, names, matrix in named:
@@ -69,11 +73,13 @@ def read_parts(path: Path, nodes: tuple[str, ...], metres_per_unit: float, smoot
 
 
 def scene_of(path: Path) -> list[tuple[Raw, tuple[str, ...], Floats]]:
-    """Each placed mesh of the file: its raw arrays, its names (own first, then the nodes above it), its matrix (3, 4)."""
+    """Each placed mesh of the file: its raw arrays, its names (own first, then those above it), its matrix (3, 4)."""
     kind = path.suffix.lower()
     if kind not in READERS:
         expected = "a file that ends in " + ", ".join(sorted(READERS))
-        raise InputError(Fault(f'meshes of kind "{kind}" are not read', str(path), expected, nearest_name(kind, READERS)))
+        raise InputError(
+            Fault(f'meshes of kind "{kind}" are not read', str(path), expected, nearest_name(kind, READERS))
+        )
     check_size(path)
     with warnings.catch_warnings():
         warnings.simplefilter("error", DeprecationWarning)  # NumPy's word for numbers that it could not read to the end
@@ -85,7 +91,9 @@ def scene_of(path: Path) -> list[tuple[Raw, tuple[str, ...], Floats]]:
         except MemoryError as error:
             raise refuse(path, "the mesh is too large for this machine's memory") from error
         except Exception as error:  # whatever the reader trips over, a person gets one sentence
-            raise refuse(path, f"the mesh cannot be read ({first_line(error)})", f"a {kind[1:].upper()} file that is whole") from error
+            raise refuse(
+                path, f"the mesh cannot be read ({first_line(error)})", f"a {kind[1:].upper()} file that is whole"
+            ) from error
     entries = list(placements(path, raw))
     if not entries:
         raise refuse(path, "the mesh has no faces", "at least one triangle")
@@ -133,7 +141,11 @@ def read_obj(path: Path) -> Raw:
         raw: Raw = load_obj(stream, group_material=False, skip_materials=True, split_objects=True)
     n_faces = sum(len(mesh["faces"]) for mesh in raw.get("geometry", {}).values())
     if n_faces < n_lines:
-        raise refuse(path, f"only {n_faces:,} of {n_lines:,} faces of the OBJ file could be read", "numbers in every v and f line")
+        raise refuse(
+            path,
+            f"only {n_faces:,} of {n_lines:,} faces of the OBJ file could be read",
+            "numbers in every v and f line",
+        )
     return raw
 
 
@@ -196,7 +208,11 @@ def asset_from(path: Path, raw: Raw, metres_per_unit: float, smooth: bool) -> Tr
     low, high = int(faces.min()), int(faces.max())
     if low < 0 or high >= len(vertices):
         bad = int(((faces < 0) | (faces >= len(vertices))).any(axis=1).sum())
-        raise refuse(path, f"{bad:,} faces name a vertex that does not exist ({low if low < 0 else high})", f"0 to {len(vertices) - 1}")
+        raise refuse(
+            path,
+            f"{bad:,} faces name a vertex that does not exist ({low if low < 0 else high})",
+            f"0 to {len(vertices) - 1}",
+        )
     faces = faces.astype(np.int32)
     settle_unused(vertices, faces)
     vertices *= metres_per_unit

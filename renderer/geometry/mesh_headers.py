@@ -74,13 +74,17 @@ def ply_elements(path: Path, lines: list[str]) -> dict[str, tuple[int, list[list
         words = line.split()
         if words[:1] == ["element"]:
             if len(words) != 3 or not re.fullmatch(r"[0-9]{1,18}", words[2]):
-                raise refuse(path, f'the PLY header has a line that cannot be read, "{line[:60]}"', "element NAME COUNT")
+                raise refuse(
+                    path, f'the PLY header has a line that cannot be read, "{line[:60]}"', "element NAME COUNT"
+                )
             current = words[1]
             elements[current] = (int(words[2]), [])
         elif words[:1] == ["property"]:
             types = words[2:4] if words[1:2] == ["list"] else words[1:2]
             if not current or len(words) not in (3, 5) or any(kind not in PLY_WIDTHS for kind in types):
-                raise refuse(path, f'the PLY header has a line that cannot be read, "{line[:60]}"', "property TYPE NAME")
+                raise refuse(
+                    path, f'the PLY header has a line that cannot be read, "{line[:60]}"', "property TYPE NAME"
+                )
             elements[current][1].append(words[1:])
     return elements
 
@@ -120,9 +124,15 @@ def check_stl(path: Path, size: int) -> bool:
     if head.lstrip()[:5].lower() == b"solid" and b"\0" not in head:
         return False
     if n_faces < 0:
-        raise refuse(path, f"the STL file is cut short ({size:,} bytes)", "at least 84 bytes, or text that starts with solid")
+        raise refuse(
+            path, f"the STL file is cut short ({size:,} bytes)", "at least 84 bytes, or text that starts with solid"
+        )
     expected = STL_HEADER_BYTES + n_faces * STL_FACE_BYTES
-    raise refuse(path, f"the STL file has {size:,} bytes", f"{expected:,} bytes, for the {n_faces:,} faces that its header states")
+    raise refuse(
+        path,
+        f"the STL file has {size:,} bytes",
+        f"{expected:,} bytes, for the {n_faces:,} faces that its header states",
+    )
 
 
 def obj_faces(path: Path) -> int:

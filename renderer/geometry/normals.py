@@ -20,7 +20,8 @@ MAX_RING = 2000  # faces round one vertex up to which creases are looked for; be
 def face_normals(vertices_m: Floats, faces: Indices) -> Floats:
     """(m, 3) normals of the faces, twice the area long, outward by winding."""
     a = vertices_m[faces[:, 0]]
-    return np.cross(vertices_m[faces[:, 1]] - a, vertices_m[faces[:, 2]] - a)
+    normals: Floats = np.cross(vertices_m[faces[:, 1]] - a, vertices_m[faces[:, 2]] - a)
+    return normals
 
 
 def corner_weights(vertices_m: Floats, faces: Indices) -> Floats:
@@ -28,16 +29,18 @@ def corner_weights(vertices_m: Floats, faces: Indices) -> Floats:
     points = vertices_m[faces]
     squares = np.square(points[:, [1, 2, 0]] - points).sum(axis=2)  # of edges 01, 12, 20
     product = squares * squares[:, [2, 0, 1]]
-    return np.divide(1.0, product, out=np.zeros_like(product), where=product > 0.0)
+    weights: Floats = np.divide(1.0, product, out=np.zeros_like(product), where=product > 0.0)
+    return weights
 
 
 def unit_rows(rows: Floats) -> Floats:
     """The rows at length one; a row without a length, or not finite, becomes +z."""
     largest = np.abs(rows).max(axis=1, keepdims=True)
     good = np.isfinite(largest) & (largest > 0.0)
-    scaled = np.divide(rows, largest, out=np.zeros_like(rows), where=good)
+    scaled: Floats = np.divide(rows, largest, out=np.zeros_like(rows), where=good)
     scaled[~good[:, 0]] = (0.0, 0.0, 1.0)
-    return scaled / np.sqrt(np.square(scaled).sum(axis=1, keepdims=True))
+    scaled /= np.sqrt(np.square(scaled).sum(axis=1, keepdims=True))
+    return scaled
 
 
 def weighted_sums(vertices_m: Floats, faces: Indices, group: Indices, n_groups: int) -> Floats:
@@ -69,7 +72,7 @@ def creased_groups(vertices_m: Floats, faces: Indices, group: Indices, smooth: F
 
 
 def corner_normals(vertices_m: Floats, faces: Indices, group: Indices, corners: Ids) -> Floats:
-    """(n, 3) normals of the given corners (3 face + corner), each from the faces at its position within the crease angle.
+    """(n, 3) normals of corners (3 face + corner), each from the faces at its position within the crease angle.
 
     `corners` must be rising, and hold every corner of each position it touches.
     """
@@ -86,7 +89,9 @@ def corner_normals(vertices_m: Floats, faces: Indices, group: Indices, corners: 
     sums[np.repeat(~small, ring)] = raw[np.repeat(~small, ring)]
     limit = float(sine_cosine_deg(CREASE_DEG)[1])
     base = np.repeat(start, ring)
-    for step in range(int(ring[small].max(initial=0))):  # the same order for all of a ring, so that equal sums are equal bits
+    for step in range(
+        int(ring[small].max(initial=0))
+    ):  # the same order for all of a ring, so that equal sums are equal bits
         mine = np.flatnonzero(np.repeat(small & (ring > step), ring))
         other = base[mine] + step
         near = (facing[mine] * facing[other]).sum(axis=1) >= limit
@@ -114,7 +119,7 @@ def smooth_normals(vertices_m: Floats, faces: Indices) -> tuple[Indices, Indices
     split = corner_normals(vertices_m, faces, group, corners)
     old = faces.reshape(-1)[corners]
     same, kept = position_groups(split)  # equal normals
-    key, pick, inverse = np.unique(old.astype(np.int64) * len(kept) + same, return_index=True, return_inverse=True)
+    _, pick, inverse = np.unique(old.astype(np.int64) * len(kept) + same, return_index=True, return_inverse=True)
     new_faces = faces.reshape(-1).copy()
     new_faces[corners] = len(vertices_m) + inverse
     source = np.concatenate([source, old[pick]]).astype(np.int32)

@@ -26,7 +26,7 @@ def position_groups(vertices_m: Floats) -> tuple[Indices, Ids]:
     hashed ^= hashed >> np.uint64(32)
     _, first, group = np.unique(hashed, return_index=True, return_inverse=True)
     if not all(np.array_equal(bits[first[group], axis], bits[:, axis]) for axis in range(3)):
-        first, group = groups_by_sorting(bits)  # two positions share a hash: never met, but then slow and right
+        group, first = groups_by_sorting(bits)  # two positions share a hash: never met, but then slow and right
     return group.astype(np.int32), first.astype(np.int64)
 
 

@@ -1,4 +1,5 @@
-"""Built-in solids of revolution: cylinder, lens, and the sphere as a mesh. Vertices lie on the true surface, normals are exact."""
+"""Built-in solids of revolution: cylinder, lens, the sphere as a mesh. Vertices lie on the true surface, normals are
+exact."""
 
 from __future__ import annotations
 
@@ -8,6 +9,8 @@ from renderer.arrays.assets import TriangleAsset
 from renderer.geometry.exact_trig import circle, sine_cosine_deg
 from renderer.geometry.positions import Floats, Indices
 from renderer.geometry.sheets import asset
+
+SHARP = 1e-9  # share of a lens's diameter below which its rim has no thickness
 
 
 class Lathe:
@@ -55,13 +58,16 @@ class Lathe:
 
     def mesh(self) -> TriangleAsset:
         """All bands as one mesh."""
-        parts = (self.vertices, self.faces, self.normals, self.uvs)
-        vertices, faces, normals, uvs = (np.concatenate(part) for part in parts)
-        return asset(vertices, faces, normals, uvs)
+        return asset(
+            np.concatenate(self.vertices),
+            np.concatenate(self.faces).astype(np.int32),
+            np.concatenate(self.normals),
+            np.concatenate(self.uvs),
+        )
 
 
 def arc(radius_m: float, from_deg: float, to_deg: float, steps: int) -> tuple[Floats, Floats]:
-    """(steps + 1, 2) points (radius, y) on a circle about the origin and their outward normals; angles up from level."""
+    """(steps + 1, 2) points (radius, y) on a circle about the origin, and outward normals; angles up from level."""
     sine, cosine = sine_cosine_deg(from_deg + (to_deg - from_deg) * np.arange(steps + 1) / steps)
     normals = np.column_stack([cosine, sine])
     return radius_m * normals, normals
@@ -84,7 +90,7 @@ def sphere_mesh(radius_m: float, rows: int) -> TriangleAsset:
 
 
 def cap(radius_m: float, half_diameter_m: float, rings: int) -> tuple[Floats, Floats]:
-    """(rings + 1, 2) (distance from the axis, sag) of a spherical face, from the axis out, and normals (outward, forward).
+    """(rings + 1, 2) (distance from the axis, sag) of a spherical face, from the axis out; normals (outward, forward).
 
     Sag is how far the face stands back from its middle: positive on a face that bulges. 0 as a radius is flat.
     """
@@ -106,8 +112,8 @@ def edge_thickness_m(radius_front_m: float, radius_back_m: float, thickness_m: f
 def lens(
     radius_front_m: float, radius_back_m: float, thickness_m: float, diameter_m: float, rings: int, segments: int
 ) -> TriangleAsset:
-    """A lens along z, front towards +z, its middle at the origin; radii are positive where a face bulges, negative where
-    it is hollow, 0 where it is flat. `thickness_m` is that of the middle.
+    """A lens along z, front towards +z, its middle at the origin. Radii are positive where a face bulges, negative
+    where it is hollow, 0 where it is flat. `thickness_m` is that of the middle.
     """
     half = diameter_m / 2.0
     front, front_normals = cap(radius_front_m, half, rings)
@@ -116,7 +122,7 @@ def lens(
     lower = np.column_stack([back[:, 0], back[:, 1] - thickness_m / 2.0])
     upper = np.column_stack([front[:, 0], thickness_m / 2.0 - front[:, 1]])
     lathe.band(lower, back_normals * np.array([1.0, -1.0]))
-    if edge_thickness_m(radius_front_m, radius_back_m, thickness_m, diameter_m) > 0.0:
+    if edge_thickness_m(radius_front_m, radius_back_m, thickness_m, diameter_m) > SHARP * diameter_m:
         lathe.band(np.array([lower[-1], upper[-1]]), np.array([[1.0, 0.0]] * 2))
     else:
         upper[-1] = lower[-1]

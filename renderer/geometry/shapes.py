@@ -106,10 +106,16 @@ def build_lens(sizes: Sizes) -> BuiltShape:
     thickness, diameter = length("lens", sizes, "thickness"), length("lens", sizes, "diameter")
     for name, radius in (("radius_front", front), ("radius_back", back)):
         if radius != 0.0 and not diameter / 2.0 <= abs(radius) < 1e7:
-            raise refuse("lens", f"has a {name} of {radius:g} m", f"at least half its diameter, {diameter / 2:g} m, or 0 for flat")
+            raise refuse(
+                "lens",
+                f"has a {name} of {radius:g} m",
+                f"at least half its diameter, {diameter / 2:g} m, or 0 for flat",
+            )
     edge = round_solids.edge_thickness_m(front, back, thickness, diameter)
-    if edge < -1e-12 * diameter:
-        raise refuse("lens", f"has a rim of {edge:.6g} m thickness", f"a thickness of at least {thickness - edge:.6g} m")
+    if edge < -round_solids.SHARP * diameter:
+        raise refuse(
+            "lens", f"has a rim of {edge:.6g} m thickness", f"a thickness of at least {thickness - edge:.6g} m"
+        )
     return BuiltShape((round_solids.lens(front, back, thickness, diameter, LENS_RINGS, segments_of("lens", sizes)),))
 
 
@@ -126,7 +132,9 @@ def build_tank(sizes: Sizes) -> BuiltShape:
     x, y, z = lengths("tank", sizes, "size", 3)
     wall, fill = length("tank", sizes, "wall"), share("tank", sizes)
     if 2.0 * wall >= min(x, z) or wall >= y:
-        raise refuse("tank", f"has walls of {wall:g} m", f"less than half its width, {min(x, z) / 2:g} m, and its height")
+        raise refuse(
+            "tank", f"has walls of {wall:g} m", f"less than half its width, {min(x, z) / 2:g} m, and its height"
+        )
     filling = (vessels.tank_filling((x, y, z), wall, fill),) if fill > 0.0 else ()
     return BuiltShape((vessels.tank((x, y, z), wall),), filling)
 

@@ -14,7 +14,9 @@ from renderer.geometry.positions import Floats, Indices
 Wave = tuple[float, float, float, float]
 
 
-def asset(vertices_m: Floats, faces: Indices, normals: Floats | None = None, uvs: Floats | None = None) -> TriangleAsset:
+def asset(
+    vertices_m: Floats, faces: Indices, normals: Floats | None = None, uvs: Floats | None = None
+) -> TriangleAsset:
     """Frozen arrays of a built mesh."""
     return TriangleAsset(
         pack(vertices_m),
@@ -69,7 +71,9 @@ def wave_height(x: Floats, z: Floats, waves: tuple[Wave, ...]) -> tuple[Floats, 
     return height, slope_x, slope_z
 
 
-def water_surface(size_m: tuple[float, float], cells: tuple[int, int], waves: tuple[Wave, ...], depth_m: float) -> TriangleAsset:
+def water_surface(
+    size_m: tuple[float, float], cells: tuple[int, int], waves: tuple[Wave, ...], depth_m: float
+) -> TriangleAsset:
     """A grid in x and z about the origin, facing +y, with exact normals; a depth above 0 closes it to a block.
 
     The block has upright sides and a flat bottom at y = -depth, and is watertight.
