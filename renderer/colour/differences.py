@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import numpy as np
+import numpy.typing as npt
 
 from renderer.colour.tables import Floats
 
@@ -21,7 +22,7 @@ def cielab(xyz: Floats, white: Floats) -> Floats:
 
 
 def ciede2000(lab1: Floats, lab2: Floats) -> Floats:
-    """CIEDE2000 colour difference (...,) of two CIELAB colours (..., 3), with k_L = k_C = k_H = 1. ISO/CIE 11664-6:2014.
+    """CIEDE2000 colour difference (...,) of two CIELAB colours (..., 3), k_L = k_C = k_H = 1. ISO/CIE 11664-6:2014.
 
     G. Sharma, W. Wu, E. N. Dalal, "The CIEDE2000 Color-Difference Formula: Implementation Notes, Supplementary Test
     Data, and Mathematical Observations", Color Research and Application 30(1), 2005, equations 2-22.
@@ -63,7 +64,7 @@ def _wrapped(turn_deg: Floats) -> Floats:
     return np.where(turn_deg > 180.0, turn_deg - 360.0, np.where(turn_deg < -180.0, turn_deg + 360.0, turn_deg))
 
 
-def _mean_hue(hue1: Floats, hue2: Floats, coloured: Floats) -> Floats:
+def _mean_hue(hue1: Floats, hue2: Floats, coloured: npt.NDArray[np.bool_]) -> Floats:
     """The hue between two hues on the shorter way, equation 14; their sum where one of them is grey."""
     total = hue1 + hue2
     far = np.abs(hue1 - hue2) > 180.0

@@ -29,7 +29,7 @@ def d65() -> Floats:
 
 @cache
 def illuminant_a() -> Floats:
-    """CIE standard illuminant A, (401,), 100 at 560 nm. ISO/CIE 11664-2:2022: a black body of 2848 K where c2 = 0.01435 m K."""
+    """CIE standard illuminant A, (401,), 100 at 560 nm. ISO/CIE 11664-2:2022: Planck, 2848 K, c2 = 0.01435 m K."""
     top = math.expm1(1.435e7 / (2848.0 * 560.0))
     return frozen(
         np.array([100.0 * (560.0 / nm) ** 5 * top / math.expm1(1.435e7 / (2848.0 * nm)) for nm in wavelengths_nm()])
@@ -43,7 +43,7 @@ def illuminant_e() -> Floats:
 
 
 def daylight_xy(temperature_k: float) -> tuple[float, float]:
-    """Chromaticity of CIE daylight of a correlated colour temperature, 4000 to 25,000 K. CIE 015:2018, equations 4.6-4.8."""
+    """Chromaticity of CIE daylight of so many kelvin (correlated), 4000-25,000. CIE 015:2018, equations 4.6-4.8."""
     require_range("daylight", temperature_k, DAYLIGHT_LOW_K, DAYLIGHT_HIGH_K)
     t = 1000.0 / temperature_k
     if temperature_k <= 7000.0:

@@ -12,7 +12,7 @@ import numpy as np
 import numpy.typing as npt
 
 from renderer.base.errors import InputError
-from renderer.colour.differences import cielab, ciede2000
+from renderer.colour.differences import ciede2000, cielab
 from renderer.colour.sigmoid_cells import cells_of, colours_and_slopes
 from renderer.colour.sigmoid_fit import fitted
 from renderer.colour.spaces import applied, reflected_matrix
