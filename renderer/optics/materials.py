@@ -28,8 +28,8 @@ MODELS = ("constant", "sellmeier", "cauchy", "abbe", "table")
 
 
 def entry_salinity(entry: LibraryEntry, salinity: float | None) -> float:
-    """The salinity that a material is meant to have: as stated, else the library's."""
-    return entry.salinity if salinity is None else salinity
+    """Per mille of salt: none in a material that has none in the library; else as stated, or the library's."""
+    return entry.salinity if salinity is None or entry.salinity == 0.0 else salinity
 
 
 def library_index(entry: LibraryEntry, wavelength_nm: npt.ArrayLike, temperature_c: float, salinity: float) -> Floats:
@@ -114,7 +114,7 @@ def index_at(
 ) -> Floats:
     """Index relative to air at any wavelengths in air, 370 to 790 nm; the shape of `wavelength_nm`.
 
-    `model` and `values` state a law; else `like` names a library material (salinity None: the library's own).
+    `model` and `values` state a law; else `like` names a library material. Salinity is sea water's alone (None: 35).
     InputError for a name, law or wavelength that is not known, and for a law that leaves 0.5 to 5.
     """
     wavelength = np.asarray(wavelength_nm, dtype=np.float64)
