@@ -6,11 +6,18 @@ import hashlib
 from pathlib import Path
 from typing import TYPE_CHECKING
 
+import numpy as np
+import numpy.typing as npt
+
+from renderer.arrays.assets import SphereAsset, TriangleAsset
+from renderer.geometry.parts import composed
 from renderer.shot.model import Material, Object
 
 if TYPE_CHECKING:
+    from renderer.checks.gap_measure import Fit
     from renderer.geometry.inspection import MeshReport
 
+Floats = npt.NDArray[np.float64]
 Key = tuple[object, ...]
 
 
@@ -20,6 +27,7 @@ class Facts:
     def __init__(self) -> None:
         self._contents: dict[Path, str] = {}
         self._meshes: dict[Key, MeshReport] = {}
+        self._fits: dict[Key, Fit | None] = {}
         self._indices: dict[Key, tuple[float, float]] = {}
 
     def content(self, path: Path) -> str:
@@ -50,6 +58,18 @@ class Facts:
             self._meshes[key] = _inspect(item)
         return self._meshes[key]
 
+    def fit(self, vessel: Object, filling: Object) -> Fit | None:
+        """How a filling lies in a vessel, in the vessel's metres; None where one is an analytic sphere.
+
+        Known by both geometries and by where one stands in the other, so what moves together is measured once.
+        """
+        place = composed(inverse(vessel.matrices[0]), filling.matrices[0])
+        key: Key = (self.geometry_key(vessel), self.geometry_key(filling), np.round(place, 9).tobytes())
+        if key not in self._fits:
+            outer, inner = triangles(vessel), triangles(filling)
+            self._fits[key] = None if outer is None or inner is None else _fit(outer, inner, place)
+        return self._fits[key]
+
     def index_and_abbe(self, material: Material) -> tuple[float, float]:
         """Index at the d line and Abbe number of a material; the latter is infinite without dispersion."""
         from renderer.optics.materials import nd_and_vd
@@ -62,17 +82,42 @@ class Facts:
         return self._indices[key]
 
 
-def _inspect(item: Object) -> MeshReport:
-    """An object's mesh or shape, measured afresh."""
-    from renderer.geometry.inspection import inspect_mesh
-
+def assets(item: Object) -> list[TriangleAsset | SphereAsset]:
+    """An object's mesh or shape in its own space, read or built afresh."""
     if item.mesh is not None:
         from renderer.geometry.mesh_files import read_parts
         from renderer.geometry.parts import placed
 
-        parts = read_parts(item.mesh, item.mesh_nodes, item.metres_per_unit, item.smooth)
-        return inspect_mesh([placed(part) for part in parts])
+        return [placed(part) for part in read_parts(item.mesh, item.mesh_nodes, item.metres_per_unit, item.smooth)]
     from renderer.geometry.shapes import build_shape
 
     assert item.shape is not None
-    return inspect_mesh(build_shape(item.shape).assets)
+    return list(build_shape(item.shape).assets)
+
+
+def _inspect(item: Object) -> MeshReport:
+    from renderer.geometry.inspection import inspect_mesh
+
+    return inspect_mesh(assets(item))
+
+
+def triangles(item: Object) -> TriangleAsset | None:
+    """An object's triangles as one mesh; None where any of it is an analytic sphere."""
+    from renderer.geometry.inspection import joined
+
+    every = assets(item)
+    found = [asset for asset in every if isinstance(asset, TriangleAsset)]
+    return joined(found) if len(found) == len(every) else None
+
+
+def _fit(vessel: TriangleAsset, filling: TriangleAsset, place: Floats) -> Fit:
+    from renderer.checks.gap_measure import measure_fit
+    from renderer.geometry.parts import Part, placed
+
+    return measure_fit(vessel, placed(Part("", filling, place)))
+
+
+def inverse(matrix: Floats) -> Floats:
+    """The (3, 4) matrix that undoes another."""
+    back = np.linalg.inv(matrix[:, :3])
+    return np.column_stack([back, -back @ matrix[:, 3]])

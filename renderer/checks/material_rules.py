@@ -88,7 +88,7 @@ def _finding(
 
 
 def _below_air(material: Material, nd: float) -> Finding:
-    inverse = round(1.0 / nd, 4)
+    inverse = round(1.0 / nd, 4) if 1.0 / nd >= THINNEST else 1.0
     return _finding(
         "material.index", "Refractive index below air's", IMPOSSIBLE, material, round(nd, 5), (1.0, DENSEST),
         "index at the d line, relative to air",

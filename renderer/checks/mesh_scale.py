@@ -128,5 +128,5 @@ def _unit_fix(item: Object, sizes: Sizes, size_m: float) -> Fix:
             f"The mesh may be in another unit: in {name} it measures {new_m:.3g} m, that is a scale of {factor:.4g}.",
             {"length_unit": name, "scale_by": float(f"{factor:.10g}")},
         )
-    factor = (sizes.high_m if size_m > sizes.high_m else sizes.low_m) / size_m
+    factor = (0.9 * sizes.high_m if size_m > sizes.high_m else 1.1 * sizes.low_m) / size_m
     return Fix(f"Scale it by {factor:.3g} or so.", {"scale_by": float(f"{factor:.3g}")})

@@ -81,10 +81,10 @@ def collect(views: Sequence[FrameView], chosen: Sequence[Rule], facts: Facts) ->
 def _ask(rule: Rule, views: Sequence[FrameView], facts: Facts) -> list[Finding]:
     """The findings of one rule. A studio's rule that fails becomes a finding of its own; one of ours ends the run."""
     if rule.own:
-        return _answers(function_of(rule.place), rule.over, views, facts)
+        return _answers(rule, function_of(rule.place), rule.over, views, facts)
     try:
         function = function_of(rule.place)
-        return [_checked(rule, answer) for answer in _answers(function, _over(function), views, facts)]
+        return _answers(rule, function, _over(function), views, facts)
     except Exception as error:  # a studio's code may fail in any way, and must not take our findings with it
         return [_crashed(rule, error, views)]
 
@@ -93,11 +93,13 @@ def _over(function: RuleFunction) -> str:
     return str(getattr(function, "over", FRAME))
 
 
-def _answers(function: RuleFunction, over: str, views: Sequence[FrameView], facts: Facts) -> list[Finding]:
+def _answers(rule: Rule, function: RuleFunction, over: str, views: Sequence[FrameView], facts: Facts) -> list[Finding]:
+    """What a rule says, each finding with its frames."""
     every = tuple(view.frame for view in views)
     if over == FRAMES:
-        return [finding if finding.frames else replace(finding, frames=every) for finding in function(views, facts)]
-    return [replace(finding, frames=(view.frame,)) for view in views for finding in function(view, facts)]
+        said = [_checked(rule, answer) for answer in function(views, facts)]
+        return [finding if finding.frames else replace(finding, frames=every) for finding in said]
+    return [replace(_checked(rule, said), frames=(view.frame,)) for view in views for said in function(view, facts)]
 
 
 def _checked(rule: Rule, answer: object) -> Finding:

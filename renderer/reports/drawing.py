@@ -18,6 +18,8 @@ BACK: Colour = (22, 26, 31)
 FRAME_BACK: Colour = (40, 47, 56)
 FRAME_LINE: Colour = (214, 220, 226)
 WORDS: Colour = (226, 231, 236)
+QUIET: Colour = (168, 178, 188)
+LABEL_PAD = 5.0
 REFERENCE_WIDTH = 1440.0  # widths and sizes below are pixels of a canvas this wide
 FAR = 1e5  # canvas pixels: beyond, a projected line is not worth drawing
 
@@ -42,7 +44,8 @@ class Canvas:
         self.clip: Box | None = None
         self._large = Image.new("RGB", (width * self.OVER, height * self.OVER), BACK)
         self._draw = ImageDraw.Draw(self._large)
-        self._boxes: list[Box] = []
+        self._boxes: list[Box] = []  # what labels must not cover
+        self._labels: list[tuple[tuple[float, float], str, Colour]] = []
 
     @property
     def image(self) -> Image.Image:
@@ -90,20 +93,41 @@ class Canvas:
                 ends = [(start[0] * self.OVER, start[1] * self.OVER), (stop[0] * self.OVER, stop[1] * self.OVER)]
                 self._draw.line(ends, fill=pen.colour, width=self._line_width(pen.width))
 
+    def band(self, inner: Floats, outer: Floats, colours: npt.NDArray[np.int64]) -> None:
+        """The stretch between two lines of places (n, 2), filled piece by piece with `colours` (n, 3) of its starts."""
+        with np.errstate(invalid="ignore"):
+            near = np.asarray((np.abs(np.hstack([inner, outer])) < FAR).all(axis=1))
+        for k in np.flatnonzero(near[:-1] & near[1:]):
+            corners = np.array([inner[k], inner[k + 1], outer[k + 1], outer[k]])
+            if any(self.holds(x, y) for x, y in corners):
+                fill = (int(colours[k][0]), int(colours[k][1]), int(colours[k][2]))
+                self._draw.polygon([(x * self.OVER, y * self.OVER) for x, y in corners], fill=fill)
+
+    def _mark(self, place: tuple[float, float], reach: float) -> tuple[float, float, float]:
+        """A mark's place and reach in pixels of the enlarged picture; labels will keep off it."""
+        x, y, size = place[0], place[1], reach * self.scale
+        self._boxes.append((x - size, y - size, x + size, y + size))
+        return x * self.OVER, y * self.OVER, size * self.OVER
+
     def cross(self, place: tuple[float, float], colour: Colour) -> None:
         """An upright cross with a ring."""
-        x, y = (part * self.OVER for part in place)
-        arm, ring = 13 * self.scale * self.OVER, 6 * self.scale * self.OVER
-        width = self._line_width(1.8)
+        x, y, arm = self._mark(place, 13)
+        ring, width = 0.46 * arm, self._line_width(1.8)
         self._draw.line([(x - arm, y), (x + arm, y)], fill=colour, width=width)
         self._draw.line([(x, y - arm), (x, y + arm)], fill=colour, width=width)
         self._draw.ellipse([x - ring, y - ring, x + ring, y + ring], outline=colour, width=width)
 
+    def disc(self, place: tuple[float, float], colour: Colour) -> None:
+        """A filled disc with a ring around it."""
+        x, y, ring = self._mark(place, 14)
+        disc = 0.6 * ring
+        self._draw.ellipse([x - disc, y - disc, x + disc, y + disc], fill=colour)
+        self._draw.ellipse([x - ring, y - ring, x + ring, y + ring], outline=colour, width=self._line_width(1.4))
+
     def saltire(self, place: Floats, colour: Colour) -> None:
         """A diagonal cross."""
-        x, y = float(place[0]) * self.OVER, float(place[1]) * self.OVER
-        if self.holds(x / self.OVER, y / self.OVER):
-            arm = 8 * self.scale * self.OVER
+        if self.holds(float(place[0]), float(place[1])):
+            x, y, arm = self._mark((float(place[0]), float(place[1])), 8)
             for sign in (-1, 1):
                 ends = [(x - arm, y - sign * arm), (x + arm, y + sign * arm)]
                 self._draw.line(ends, fill=colour, width=self._line_width(1.8))
@@ -128,20 +152,41 @@ class Canvas:
         self.label((tip[0] - 2 * size * ux, tip[1] - 2 * size * uy), words, colour)
 
     def label(self, place: tuple[float, float], words: str, colour: Colour) -> None:
-        """Words beside a place, on a dark ground, moved to stay inside the clip and off earlier words."""
-        font = self._font(20)
+        """Words beside a place; they are written by `write_labels`, when every mark is known."""
+        self._labels.append((place, words, colour))
+
+    def write_labels(self) -> None:
+        """Write the words asked for, on a dark ground, inside the clip, off the marks and off each other."""
+        for place, words, colour in self._labels:
+            box = self._free_box(place, words)
+            self._boxes.append(box)
+            self._draw.rectangle([part * self.OVER for part in box], fill=BACK)
+            spot = ((box[0] + LABEL_PAD * self.scale) * self.OVER, 0.5 * (box[1] + box[3]) * self.OVER)
+            self._draw.text(spot, words, fill=colour, font=self._font(20), anchor="lm")
+
+    def _free_box(self, place: tuple[float, float], words: str) -> Box:
+        """The first free place for words: right above, right below, left above, left below; else right above."""
         left, top, right, bottom = self.clip or (0.0, 0.0, float(self.width), float(self.height))
-        wide = font.getlength(words) / self.OVER
-        high, pad = 26 * self.scale, 5 * self.scale
-        x = min(max(place[0] + 14 * self.scale, left + pad), right - wide - 3 * pad)
-        y = min(max(place[1] - high - 2 * pad, top + pad), bottom - high - pad)
-        box = (x - pad, y - pad, x + wide + pad, y + high + pad)
-        while any(_overlap(box, other) for other in self._boxes) and box[3] + high < bottom:
-            box = (box[0], box[1] + high + 3 * pad, box[2], box[3] + high + 3 * pad)
-        self._boxes.append(box)
-        self._draw.rectangle([part * self.OVER for part in box], fill=BACK)
-        spot = ((box[0] + pad) * self.OVER, (box[1] + 0.5 * (high + 2 * pad)) * self.OVER)
-        self._draw.text(spot, words, fill=colour, font=font, anchor="lm")
+        pad, off = LABEL_PAD * self.scale, 16 * self.scale
+        wide = self._font(20).getlength(words) / self.OVER + 2 * pad
+        high = max(11.0, 20 * self.scale) * 1.3 + pad
+        boxes = []
+        for x, y in (
+            (off, -off - high),
+            (off, off),
+            (-off - wide, -off - high),
+            (-off - wide, off),
+            (off, 3 * off + high),
+        ):
+            x = min(max(place[0] + x, left + pad), right - wide - pad)
+            y = min(max(place[1] + y, top + pad), bottom - high - pad)
+            boxes.append((x, y, x + wide, y + high))
+        return next((box for box in boxes if not any(_overlap(box, other) for other in self._boxes)), boxes[0])
+
+    def clear_below(self, top: float) -> None:
+        """Take away the clip and whatever reaches below `top`."""
+        self.clip = None
+        self._draw.rectangle([0, top * self.OVER, self.width * self.OVER, self.height * self.OVER], fill=BACK)
 
     def title(self, top: float, words: str) -> None:
         """One line of words at the left, `top` from the top."""
@@ -163,6 +208,12 @@ class Canvas:
             spot = ((x + sample + 10 * self.scale) * self.OVER, y * self.OVER)
             self._draw.text(spot, words, fill=WORDS, font=font, anchor="lm")
             x += wide + 34 * self.scale
+
+    def notes(self, top: float, lines: list[str]) -> None:
+        """Lines of smaller words at the left."""
+        for index, words in enumerate(lines):
+            spot = (28 * self.scale * self.OVER, (top + (6 + 32 * index) * self.scale) * self.OVER)
+            self._draw.text(spot, words, fill=QUIET, font=self._font(20), anchor="lm")
 
 
 def _overlap(a: Box, b: Box) -> bool:

@@ -13,9 +13,10 @@ import numpy as np
 import numpy.typing as npt
 
 from renderer.checks.bow_limits import KNOWN_ORDERS, limits_of
-from renderer.checks.expected import ORDERS
+from renderer.checks.expected import ORDERS, bows_of_frame
 from renderer.checks.view import FrameView
-from renderer.reports.drawing import Canvas, Colour, Pen
+from renderer.reports.drawing import REFERENCE_WIDTH, Canvas, Colour, Pen
+from renderer.shot.model import BowToCheck
 
 if TYPE_CHECKING:
     from PIL import Image
@@ -23,17 +24,18 @@ if TYPE_CHECKING:
 Floats = npt.NDArray[np.float64]
 
 MARGIN = 0.14  # of the frame's width, around the frame
-CLOCKS_DEG = np.linspace(-180.0, 180.0, 721)
+CLOCKS_DEG = np.linspace(-180.0, 180.0, 1441)
+KEY_HEIGHT, NOTE_HEIGHT = 106.0, 32.0  # pixels of the reference width
 AZIMUTHS_DEG = np.linspace(0.0, 360.0, 1441)
 
-BANDS: tuple[tuple[float, Colour], ...] = (  # share of the way from violet to red, and how it is drawn
-    (0.0, (142, 96, 224)),
-    (1 / 6, (84, 118, 240)),
-    (2 / 6, (66, 186, 216)),
-    (3 / 6, (92, 204, 104)),
-    (4 / 6, (238, 218, 84)),
-    (5 / 6, (244, 158, 60)),
-    (1.0, (236, 82, 70)),
+BANDS: tuple[Colour, ...] = (  # from violet to red, as drawn
+    (142, 96, 224),
+    (84, 118, 240),
+    (66, 186, 216),
+    (92, 204, 104),
+    (238, 218, 84),
+    (244, 158, 60),
+    (236, 82, 70),
 )
 HORIZON: Colour = (150, 164, 178)
 STATED: Colour = (255, 255, 255)
@@ -70,47 +72,49 @@ def overlay_png(view: FrameView, picture: Path | None = None, width: int = 1440)
 
 
 def draw_overlay(view: FrameView, picture: Path | None, width: int) -> Image.Image:
-    """The overlay of one frame: frame, horizon, expected bands, antisolar point, stated bows, and a key to them."""
+    """The overlay of one frame: horizon, expected bands, sun, antisolar point, stated bows, and a key to them."""
     columns, rows = view.shot.camera.pixels
-    shape = rows / (columns * view.shot.camera.pixel_aspect)
-    frame_width = width * (1.0 - 2.0 * MARGIN)
-    frame_height = frame_width * shape
-    margin = MARGIN * width
-    key_height = 0.105 * width
+    margin, notes = MARGIN * width, list(_notes(view))
+    frame_width = width - 2.0 * margin
+    frame_height = frame_width * rows / (columns * view.shot.camera.pixel_aspect)
     layout = Layout(margin, 0.6 * margin, frame_width / columns, frame_height / rows)
-    canvas = Canvas(width, round(frame_height + 1.2 * margin + key_height))
+    key_top = frame_height + 1.2 * margin
+    canvas = Canvas(width, round(key_top + (KEY_HEIGHT + NOTE_HEIGHT * len(notes)) * width / REFERENCE_WIDTH))
     corner = (margin, 0.6 * margin, margin + frame_width, 0.6 * margin + frame_height)
     canvas.picture(corner, picture)
-    canvas.clip = (0.0, 0.0, float(width), frame_height + 1.2 * margin)
+    canvas.clip = (0.0, 0.0, float(width), key_top)
+    for order in ORDERS:
+        _draw_expected(view, layout, canvas, order)
     _draw_horizon(view, layout, canvas)
-    if view.antisolar is not None:
-        for order in ORDERS:
-            _draw_expected(view, layout, canvas, order)
-    for bow in view.bows:
-        _draw_stated(view, layout, canvas, bow.name)
-    _draw_antisolar(view, layout, canvas)
     canvas.frame(corner)
-    _draw_key(view, canvas, frame_height + 1.2 * margin)
+    for bow in view.bows:
+        _draw_stated(view, layout, canvas, bow)
+    _draw_sun(view, layout, canvas)
+    canvas.write_labels()
+    canvas.clear_below(key_top)
+    canvas.title(key_top, " · ".join(_facts(view)))
+    canvas.key(key_top, list(_key_entries(view)))
+    canvas.notes(key_top + KEY_HEIGHT * canvas.scale, notes)
     return canvas.image
 
 
 def _draw_horizon(view: FrameView, layout: Layout, canvas: Canvas) -> None:
     azimuths = np.radians(AZIMUTHS_DEG)[:, None]
     level = np.cos(azimuths) * np.array(view.axes.north) + np.sin(azimuths) * np.array(view.axes.east)
-    canvas.path(layout.place(view.pixels(level)), Pen(HORIZON, 1.0, dash=0))
+    canvas.path(layout.place(view.pixels(level)), Pen(HORIZON, 1.0))
 
 
 def _draw_expected(view: FrameView, layout: Layout, canvas: Canvas, order: int) -> None:
-    """The seven rings of one expected bow: bright above the horizon, faint below."""
+    """The band of one expected bow, ring by ring: bright above the horizon, faint below."""
     if view.antisolar is None:
         return
     violet, red = band_edges_deg(order)
-    for share, colour in BANDS:
-        circle = view.circle(view.antisolar, violet + share * (red - violet), CLOCKS_DEG)
-        places = layout.place(view.pixels(circle))
-        above = circle @ np.array(view.axes.up) >= 0.0
-        canvas.path(np.where(above[:, None], places, np.nan), Pen(colour, 1.6))
-        canvas.path(np.where(above[:, None], np.nan, places), Pen(_dimmed(colour), 1.0))
+    edges = violet + np.linspace(0.0, 1.0, len(BANDS) + 1) * (red - violet)
+    circles = [view.circle(view.antisolar, edge, CLOCKS_DEG) for edge in edges]
+    places = [layout.place(view.pixels(circle)) for circle in circles]
+    for k, colour in enumerate(BANDS):
+        above = (circles[k] + circles[k + 1]) @ np.array(view.axes.up) >= 0.0
+        canvas.band(places[k], places[k + 1], np.where(above[:, None], colour, _dimmed(colour)))
 
 
 def band_edges_deg(order: int) -> tuple[float, float]:
@@ -126,31 +130,32 @@ def _dimmed(colour: Colour) -> Colour:
     return red, green, blue
 
 
-def _draw_stated(view: FrameView, layout: Layout, canvas: Canvas, name: str) -> None:
+def _draw_stated(view: FrameView, layout: Layout, canvas: Canvas, bow: BowToCheck) -> None:
     """A stated bow as a dashed ring around its own centre, with its name at the ring's highest point in sight."""
-    bow = next(bow for bow in view.bows if bow.name == name)
     if bow.centre is None:
         return
     radius = bow.radius_deg
     if radius is None:
         radius = limits_of(bow.order).typical_deg if bow.order in KNOWN_ORDERS else None
-    centre = layout.place(view.pixels(np.array([bow.centre])))[0]
-    canvas.saltire(centre, STATED)
-    ring = centre[None]
+    ring = layout.place(view.pixels(np.array([bow.centre])))
+    canvas.saltire(ring[0], STATED)
     if radius is not None:
         ring = layout.place(view.pixels(view.circle(bow.centre, radius, CLOCKS_DEG)))
-        canvas.path(ring, Pen(STATED, 1.4, dash=9))
-    inside = [(x, y) for x, y in ring if canvas.holds(x, y)]
+        canvas.path(ring, Pen(STATED, 1.6, dash=9))
+    inside = [(float(x), float(y)) for x, y in ring if canvas.holds(x, y)]
     if inside:
-        x, y = min(inside, key=lambda place: place[1])
-        canvas.label((x, y), f"as stated: {bow.name}", STATED)
+        canvas.label(min(inside, key=lambda place: place[1]), f"as stated: {bow.name}", STATED)
 
 
-def _draw_antisolar(view: FrameView, layout: Layout, canvas: Canvas) -> None:
-    """The antisolar point as a cross; where it is off the canvas, an arrow at the edge towards it."""
-    if view.antisolar is None:
+def _draw_sun(view: FrameView, layout: Layout, canvas: Canvas) -> None:
+    """The sun and the antisolar point; an arrow at the edge towards the latter where it is off the canvas."""
+    if view.antisolar is None or view.sun is None:
         return
-    x, y = layout.place(view.pixels(np.array([view.antisolar])))[0]
+    x, y = (float(part) for part in layout.place(view.pixels(np.array([view.sun])))[0])
+    if canvas.holds(x, y):
+        canvas.disc((x, y), POINT)
+        canvas.label((x, y), "sun", POINT)
+    x, y = (float(part) for part in layout.place(view.pixels(np.array([view.antisolar])))[0])
     if canvas.holds(x, y):
         canvas.cross((x, y), POINT)
         canvas.label((x, y), "antisolar point", POINT)
@@ -158,11 +163,14 @@ def _draw_antisolar(view: FrameView, layout: Layout, canvas: Canvas) -> None:
         canvas.arrow((x, y), "antisolar point", POINT)
 
 
-def _draw_key(view: FrameView, canvas: Canvas, top: float) -> None:
-    """What the lines mean, and the sun that they hold for."""
-    canvas.clip = None
-    canvas.title(top, " · ".join(_facts(view)))
-    canvas.key(top, list(_key_entries(view)))
+def _notes(view: FrameView) -> Iterator[str]:
+    """Why an expected bow is not in the frame, in a line each."""
+    found = bows_of_frame(view)
+    if found.why_not:
+        yield f"No bows. {found.why_not}"
+    for bow in found.bows:
+        if bow.why_not:
+            yield f"{bow.name.capitalize()}: none in view. {bow.why_not}"
 
 
 def _facts(view: FrameView) -> Iterator[str]:
@@ -175,9 +183,9 @@ def _facts(view: FrameView) -> Iterator[str]:
 def _key_entries(view: FrameView) -> Iterator[tuple[str, tuple[Colour, ...], int]]:
     """(words, colours of the sample, dash)."""
     if view.antisolar is not None:
-        yield "primary bow", tuple(colour for _, colour in BANDS), 0
-        yield "secondary bow", tuple(colour for _, colour in reversed(BANDS)), 0
-        yield "faint: below the horizon", (_dimmed(BANDS[3][1]),), 0
+        yield "primary bow", BANDS[::-1], 0
+        yield "secondary bow", BANDS, 0
+        yield "faint: below the horizon", (_dimmed(BANDS[3]),), 0
     yield "horizon", (HORIZON,), 0
     if any(bow.centre is not None for bow in view.bows):
-        yield "bow as stated, centre ×", (STATED,), 9
+        yield "bow as stated, with its centre", (STATED,), 9
