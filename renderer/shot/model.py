@@ -228,3 +228,4 @@ class FrameShot:
     settings: Settings
     output_space: str  # "acescg", "rec709", "rec2020", "xyz"
     fingerprint: str
+    fail_on: str | None = None  # the mildest severity that fails the check, where the shot says so

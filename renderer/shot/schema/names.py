@@ -1,0 +1,73 @@
+"""Names that must be unique, and names that must exist; looked at as written, so that other errors hide none."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from functools import cache
+from typing import Any
+
+from renderer.base.errors import nearest_name
+from renderer.shot.schema.flaws import Flaw, Path
+
+
+@cache
+def library_names() -> tuple[str, ...]:
+    """The names of the library of materials."""
+    from renderer.optics.materials import material_names
+
+    return tuple(material_names())
+
+
+def rows(table: dict[str, Any], name: str) -> Iterator[tuple[int, dict[str, Any]]]:
+    """The tables of a list of tables, with their numbers; whatever is none is passed over."""
+    value = table.get(name)
+    if isinstance(value, list):
+        yield from ((index, row) for index, row in enumerate(value) if isinstance(row, dict))
+
+
+def repeated_names(shot: dict[str, Any]) -> Iterator[Flaw]:
+    """Objects and lights, and bows, that share a name."""
+    for kinds in (("objects", "lights"), ("bows_to_check",)):
+        taken: dict[str, str] = {}
+        for kind in kinds:
+            for index, row in rows(shot, kind):
+                name = row.get("name")
+                if not isinstance(name, str):
+                    continue
+                if name in taken:
+                    yield Flaw(
+                        (kind, index, "name"), f'the name "{name[:60]}" is taken by {taken[name]}', "a name of its own"
+                    )
+                taken.setdefault(name, f"{kind}[{index}]")
+
+
+def unknown_materials(shot: dict[str, Any]) -> Iterator[Flaw]:
+    """References to materials that neither the shot nor the library has."""
+    own = shot.get("materials")
+    own = own if isinstance(own, dict) else {}
+    for name, material in own.items():
+        like = material.get("like") if isinstance(material, dict) else None
+        if isinstance(like, str) and like not in library_names():
+            yield _unknown(("materials", name, "like"), like, library_names(), 'a name from "antisolar materials"')
+    known = (*own, *library_names()) if any(True for _ in _references(shot)) else ()
+    for at, name in _references(shot):
+        if name not in known:
+            yield _unknown(at, name, known, 'a name from [materials] or from "antisolar materials"')
+
+
+def _unknown(at: Path, name: str, known: tuple[str, ...], expected: str) -> Flaw:
+    return Flaw(at, f'no material is named "{name[:60]}"', expected, nearest_name(name[:200], known))
+
+
+def _references(shot: dict[str, Any]) -> Iterator[tuple[Path, str]]:
+    """Every place that names a material."""
+    for index, row in rows(shot, "objects"):
+        for key in ("material", "below"):
+            if isinstance(row.get(key), str):
+                yield ("objects", index, key), row[key]
+        shape = row.get("shape")
+        for kind in ("tank", "bowl"):
+            vessel = shape.get(kind) if isinstance(shape, dict) else None
+            filling = vessel.get("filling") if isinstance(vessel, dict) else None
+            if isinstance(filling, str):
+                yield ("objects", index, "shape", kind, "filling"), filling

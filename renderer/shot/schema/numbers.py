@@ -1,0 +1,375 @@
+"""Leaves of the schema that hold numbers: one, a vector, a colour, lists and tables of pairs; and keying by frame."""
+
+from __future__ import annotations
+
+import math
+import re
+from dataclasses import dataclass
+from typing import Any
+
+from renderer.shot.keyed import Keys
+from renderer.shot.schema.flaws import Flaw, Flawed, Path, below, refusal
+from renderer.shot.schema.leaves import Leaf
+
+LARGEST = 1e12  # beyond any shot in any unit, and far from overflow
+MOST_KEYS = 100_000
+EASE = "ease"
+_FRAME = re.compile(r"-?\d{1,8}", re.ASCII)
+
+
+@dataclass(frozen=True)
+class Bounds:
+    """The range of a number: `low` and `high` are allowed themselves, `above` is not; `nonzero` refuses zero."""
+
+    low: float | None = None
+    high: float | None = None
+    above: float | None = None
+    nonzero: bool = False
+
+    def hold(self, value: float) -> bool:
+        """Whether `value` is allowed."""
+        return (
+            abs(value) <= LARGEST
+            and (self.low is None or value >= self.low)
+            and (self.high is None or value <= self.high)
+            and (self.above is None or value > self.above)
+            and not (self.nonzero and value == 0)
+        )
+
+    def text(self) -> str:
+        """The range in words, empty where any finite number will do."""
+        if self.above is not None:
+            return f"above {self.above:g}" + (f", up to {self.high:g}" if self.high is not None else "")
+        if self.low is not None and self.high is not None:
+            return f"from {self.low:g} to {self.high:g}"
+        if self.low is not None:
+            return f"{self.low:g} or more"
+        if self.high is not None:
+            return f"up to {self.high:g}"
+        return "other than 0" if self.nonzero else ""
+
+    def json(self) -> dict[str, Any]:
+        """The range as JSON Schema."""
+        found = {"minimum": self.low, "maximum": self.high, "exclusiveMinimum": self.above}
+        schema: dict[str, Any] = {key: value for key, value in found.items() if value is not None}
+        return schema | ({"not": {"const": 0}} if self.nonzero else {})
+
+
+def is_number(value: Any) -> bool:
+    """Whether `value` is a finite number of TOML; true and false are none."""
+    if isinstance(value, bool) or not isinstance(value, int | float):
+        return False
+    return abs(value) <= LARGEST if isinstance(value, int) else math.isfinite(value)
+
+
+@dataclass(frozen=True)
+class NumberLeaf(Leaf):
+    """What all leaves of numbers share: a unit, bounds of every number, and whether it may be keyed."""
+
+    unit_text: str = ""
+    bounds: Bounds = Bounds()
+    may_be_keyed: bool = True
+
+    @property
+    def unit(self) -> str:
+        return self.unit_text
+
+    @property
+    def keyed(self) -> bool:
+        return self.may_be_keyed
+
+    def tail(self) -> str:
+        """Range and unit, to follow "a number" or the like."""
+        found = self.bounds.text()
+        unit = f", in {self.unit}" if self.unit else ""
+        return (f" {found}" if found else "") + unit
+
+    def read(self, value: Any) -> Any:
+        if self.keyed and isinstance(value, dict):
+            return read_keys(value, self)
+        return self.finish(self.still(value))
+
+    def still(self, value: Any) -> tuple[float, ...]:
+        """The numbers of a value that is not keyed; raises `Flawed`."""
+        raise NotImplementedError
+
+    def finish(self, numbers: tuple[float, ...]) -> Any:
+        """The final form of such numbers."""
+        return numbers
+
+    def still_json(self) -> dict[str, Any]:
+        """JSON Schema of a value that is not keyed."""
+        raise NotImplementedError
+
+    def json(self) -> dict[str, Any]:
+        still = self.still_json()
+        if not self.keyed:
+            return still
+        keys = {
+            "type": "object",
+            "description": "keyed by frame",
+            "patternProperties": {"^-?[0-9]+$": still},
+            "properties": {EASE: {"type": "boolean"}},
+            "additionalProperties": False,
+            "minProperties": 1,
+        }
+        return {"anyOf": [still, keys]}
+
+    def one(self, value: Any, at: Path = ()) -> float:
+        """One finite number inside the bounds; raises `Flawed`."""
+        if is_number(value) and self.bounds.hold(value):
+            return float(value) + 0.0  # no negative zero
+        raise Flawed(refusal(value, f"a number{self.tail()}", at))
+
+
+def read_keys(table: dict[str, Any], leaf: NumberLeaf) -> Keys:
+    """A keyed value, ``{ 1001 = 12.0, 1048 = 14.5, ease = true }``; raises `Flawed` with all that is wrong."""
+    flaws: list[Flaw] = []
+    ease = table.get(EASE, False)
+    if not isinstance(ease, bool):
+        flaws.append(refusal(ease, "true or false", (EASE,)))
+    keys: dict[int, tuple[float, ...]] = {}
+    for name, value in table.items():
+        if name == EASE:
+            continue
+        frame = _frame(name, keys, flaws)
+        try:
+            keys[frame] = leaf.still(value)
+        except Flawed as error:
+            flaws += below((name,), error.flaws)
+    if not keys and not flaws:
+        flaws.append(
+            Flaw((), "`{key}` has no keys", f"frames and values, as in {{ 1001 = ..., 1048 = ... }}: {leaf.expects()}")
+        )
+    if len(keys) > MOST_KEYS:
+        flaws.append(Flaw((), f"`{{key}}` has {len(keys):,} keys", f"at most {MOST_KEYS:,} keys"))
+    if flaws:
+        raise Flawed(*flaws)
+    frames = tuple(sorted(keys))
+    return Keys(frames, tuple(keys[frame] for frame in frames), ease)
+
+
+def _frame(name: str, taken: dict[int, tuple[float, ...]], flaws: list[Flaw]) -> int:
+    """The frame that a key stands at; 0 with a new flaw where it is none."""
+    if not _FRAME.fullmatch(name):
+        flaws.append(
+            Flaw((name,), f'"{name[:40]}" is not a frame', f"whole frame numbers as keys, and {EASE} = true or false")
+        )
+        return 0
+    frame = int(name)
+    if frame in taken:
+        flaws.append(Flaw((name,), f"frame {frame} is keyed twice", "one value a frame"))
+    return frame
+
+
+@dataclass(frozen=True)
+class Number(NumberLeaf):
+    """One number."""
+
+    def expects(self) -> str:
+        return f"a number{self.tail()}"
+
+    def still(self, value: Any) -> tuple[float, ...]:
+        return (self.one(value),)
+
+    def finish(self, numbers: tuple[float, ...]) -> float:
+        return numbers[0]
+
+    def still_json(self) -> dict[str, Any]:
+        return {"type": "number", **self.bounds.json()}
+
+
+@dataclass(frozen=True)
+class Vector(NumberLeaf):
+    """`count` numbers; with `single`, one number stands for all of them."""
+
+    count: int = 3
+    single: bool = False
+
+    def expects(self) -> str:
+        return f"{self.count} numbers{self.tail()}" + (", or one number for all of them" if self.single else "")
+
+    def still(self, value: Any) -> tuple[float, ...]:
+        if self.single and is_number(value):
+            return (self.one(value),) * self.count
+        if not isinstance(value, list):
+            raise Flawed(refusal(value, self.expects()))
+        if len(value) != self.count:
+            raise Flawed(Flaw((), f"`{{key}}` has {len(value)} entries", self.expects()))
+        return numbers_in(value, self)
+
+    def still_json(self) -> dict[str, Any]:
+        item = {"type": "number", **self.bounds.json()}
+        many = {"type": "array", "items": item, "minItems": self.count, "maxItems": self.count}
+        return {"anyOf": [item, many]} if self.single else many
+
+
+@dataclass(frozen=True)
+class Numbers(NumberLeaf):
+    """A list of `fewest` to `most` numbers, their count a multiple of `multiple`; never keyed."""
+
+    may_be_keyed: bool = False
+    fewest: int = 1
+    most: int = 1000
+    multiple: int = 1
+
+    def expects(self) -> str:
+        kind = "" if self.multiple == 1 else f", {self.multiple} at a time"
+        return f"a list of {self.fewest} to {self.most} numbers{self.tail()}{kind}"
+
+    def still(self, value: Any) -> tuple[float, ...]:
+        if not isinstance(value, list):
+            raise Flawed(refusal(value, self.expects()))
+        if not self.fewest <= len(value) <= self.most or len(value) % self.multiple:
+            raise Flawed(Flaw((), f"`{{key}}` has {len(value)} entries", self.expects()))
+        return numbers_in(value, self)
+
+    def still_json(self) -> dict[str, Any]:
+        item = {"type": "number", **self.bounds.json()}
+        return {"type": "array", "items": item, "minItems": self.fewest, "maxItems": self.most}
+
+
+def numbers_in(values: list[Any], leaf: NumberLeaf) -> tuple[float, ...]:
+    """Every entry as a number inside the leaf's bounds; raises `Flawed` with every entry that is none."""
+    found: list[float] = []
+    flaws: list[Flaw] = []
+    for index, entry in enumerate(values):
+        try:
+            found.append(leaf.one(entry, (index,)))
+        except Flawed as error:
+            flaws += error.flaws
+    if flaws:
+        raise Flawed(*flaws)
+    return tuple(found)
+
+
+@dataclass(frozen=True)
+class Whole(Leaf):
+    """A whole number from `low` to `high`; never keyed."""
+
+    low: int
+    high: int
+    unit_text: str = ""
+
+    @property
+    def unit(self) -> str:
+        return self.unit_text
+
+    def expects(self) -> str:
+        return f"a whole number from {self.low} to {self.high}" + (f", in {self.unit}" if self.unit else "")
+
+    def read(self, value: Any) -> int:
+        if isinstance(value, int) and not isinstance(value, bool) and self.low <= value <= self.high:
+            return value
+        raise Flawed(refusal(value, self.expects()))
+
+    def json(self) -> dict[str, Any]:
+        return {"type": "integer", "minimum": self.low, "maximum": self.high}
+
+
+@dataclass(frozen=True)
+class Wholes(Leaf):
+    """`count` whole numbers; with `single`, one stands for all of them."""
+
+    count: int
+    low: int
+    high: int
+    unit_text: str = ""
+    single: bool = False
+
+    @property
+    def unit(self) -> str:
+        return self.unit_text
+
+    def expects(self) -> str:
+        unit = f", in {self.unit}" if self.unit else ""
+        single = ", or one for all of them" if self.single else ""
+        return f"{self.count} whole numbers from {self.low} to {self.high}{unit}{single}"
+
+    def read(self, value: Any) -> tuple[int, ...]:
+        whole = Whole(self.low, self.high)
+        if self.single and isinstance(value, int) and not isinstance(value, bool):
+            value = [value] * self.count
+        if not isinstance(value, list):
+            raise Flawed(refusal(value, self.expects()))
+        if len(value) != self.count:
+            raise Flawed(Flaw((), f"`{{key}}` has {len(value)} entries", self.expects()))
+        flaws: list[Flaw] = []
+        for index, entry in enumerate(value):
+            try:
+                whole.read(entry)
+            except Flawed as error:
+                flaws += below((index,), error.flaws)
+        if flaws:
+            raise Flawed(*flaws)
+        return tuple(value)
+
+    def json(self) -> dict[str, Any]:
+        item = {"type": "integer", "minimum": self.low, "maximum": self.high}
+        many = {"type": "array", "items": item, "minItems": self.count, "maxItems": self.count}
+        return {"anyOf": [item, many]} if self.single else many
+
+
+LOWEST_NM, HIGHEST_NM = 200.0, 3000.0  # of a table that the shot gives; what is used lies in 380-780 nm
+
+
+@dataclass(frozen=True)
+class Pairs(Leaf):
+    """A table by wavelength, ``[[nm, value], ...]``, wavelengths rising; never keyed."""
+
+    of: str
+    bounds: Bounds = Bounds()
+    unit_text: str = ""
+    fewest: int = 1
+    most: int = 10_000
+    lowest_nm: float = LOWEST_NM
+    highest_nm: float = HIGHEST_NM
+
+    @property
+    def unit(self) -> str:
+        return f"nm and {self.unit_text}" if self.unit_text else "nm"
+
+    def expects(self) -> str:
+        tail = NumberLeaf(self.unit_text, self.bounds).tail()
+        return f"pairs [[nm, {self.of}], ...], wavelengths rising from {self.lowest_nm:g} to {self.highest_nm:g} nm, {self.of}{tail}"
+
+    def read(self, value: Any) -> tuple[tuple[float, float], ...]:
+        if not isinstance(value, list):
+            raise Flawed(refusal(value, self.expects()))
+        if not self.fewest <= len(value) <= self.most:
+            raise Flawed(
+                Flaw((), f"`{{key}}` has {len(value)} entries", f"{self.fewest} to {self.most} {self.expects()}")
+            )
+        flaws: list[Flaw] = []
+        pairs = [self._pair(entry, index, flaws) for index, entry in enumerate(value)]
+        if not flaws:
+            flaws = [
+                Flaw((i,), f"`{{key}}` is at {pairs[i][0]:g} nm, after {pairs[i - 1][0]:g} nm", "wavelengths that rise")
+                for i in range(1, len(pairs))
+                if pairs[i][0] <= pairs[i - 1][0]
+            ]
+        if flaws:
+            raise Flawed(*flaws)
+        return tuple(pairs)
+
+    def _pair(self, entry: Any, index: int, flaws: list[Flaw]) -> tuple[float, float]:
+        """One pair; (0, 0) with new flaws where it is none."""
+        if not isinstance(entry, list) or len(entry) != 2:
+            flaws.append(refusal(entry, f"a pair [nm, {self.of}]", (index,)))
+            return 0.0, 0.0
+        try:
+            wavelength = NumberLeaf("nm", Bounds(self.lowest_nm, self.highest_nm)).one(entry[0], (index, 0))
+            return wavelength, NumberLeaf(self.unit_text, self.bounds).one(entry[1], (index, 1))
+        except Flawed as error:
+            flaws += error.flaws
+            return 0.0, 0.0
+
+    def json(self) -> dict[str, Any]:
+        wavelength = {"type": "number", "minimum": self.lowest_nm, "maximum": self.highest_nm}
+        pair = {
+            "type": "array",
+            "prefixItems": [wavelength, {"type": "number", **self.bounds.json()}],
+            "minItems": 2,
+            "maxItems": 2,
+        }
+        return {"type": "array", "items": pair, "minItems": self.fewest, "maxItems": self.most}

@@ -1,0 +1,194 @@
+"""The base of every table of the shot file: one pass that finds everything wrong with it."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+from typing import Any, ClassVar, Self, cast, get_origin
+
+from pydantic import BaseModel, ConfigDict, Field, ValidationError, ValidatorFunctionWrapHandler, model_validator
+from pydantic.fields import FieldInfo
+from pydantic_core import PydanticCustomError
+
+from renderer.base.errors import nearest_name
+from renderer.shot.schema.flaws import Flaw, Path, below, listed, refusal
+from renderer.shot.schema.leaves import Leaf
+
+UNIT_ENDINGS = ("_mm", "_cm", "_m", "_km", "_ft", "_in", "_nm", "_deg", "_degrees", "_k", "_c", "_s")
+
+
+@dataclass(frozen=True)
+class OneOf:
+    """Keys of a table that exclude each other, in groups that belong together; `needed`: one of them must be there."""
+
+    groups: tuple[tuple[str, ...], ...]
+    needed: bool = True
+
+    def flaws(self, given: set[str]) -> Iterator[Flaw]:
+        """What is wrong with the keys that are `given`."""
+        met = [group for group in self.groups if given.intersection(group)]
+        if len(met) > 1:
+            first, second = (next(key for key in group if key in given) for group in met[:2])
+            yield Flaw((second,), f"`{first}` and `{second}` exclude each other", f"one of {self.text()}")
+        if not met and self.needed:
+            yield Flaw((), f"{self.text('or')} is missing", f"one of {self.text()}")
+
+    def json(self) -> dict[str, Any]:
+        """The rule as JSON Schema."""
+        some = [
+            {"required": list(group)} if len(group) == 1 else {"anyOf": [{"required": [key]} for key in group]}
+            for group in self.groups
+        ]
+        none = [] if self.needed else [{"not": {"anyOf": some}}]
+        return {"oneOf": [*some, *none]}
+
+    def text(self, last: str = "or") -> str:
+        """The alternatives in a sentence."""
+        return listed([" with ".join(f"`{key}`" for key in group) for group in self.groups], last)
+
+    def excluded_by(self, key: str) -> set[str]:
+        """The keys that cannot stand beside `key`."""
+        return {other for group in self.groups for other in group if key not in group} if self._has(key) else set()
+
+    def _has(self, key: str) -> bool:
+        return any(key in group for group in self.groups)
+
+
+def key(default: Any, meaning: str, example: str, default_text: str = "", alias: str | None = None) -> Any:
+    """A field of a table: its default (``...`` where it must be given), meaning, an example in TOML, and, where the
+    default needs words, those."""
+    import tomllib
+
+    try:
+        shown = [tomllib.loads(f"example = {example}")["example"]]
+    except tomllib.TOMLDecodeError as error:
+        raise ValueError(f"{example!r} is not a value of TOML") from error
+    extra = {"x-example": example} | ({"x-default": default_text} if default_text else {})
+    return Field(default, description=meaning, examples=shown, json_schema_extra=cast(Any, extra), alias=alias)
+
+
+def leaf_of(info: FieldInfo) -> Leaf | None:
+    """The leaf in a field's annotation, or None where the field is a table or holds tables."""
+    return next((item for item in info.metadata if isinstance(item, Leaf)), None)
+
+
+class Table(BaseModel):
+    """A table of the shot file. Subclasses state their keys, and what rules there are between them.
+
+    `ONE_OF`: keys that exclude each other. `LATER`: keys that are known but not supported yet. `SHORT`: the JSON Schema of
+    what may be written in place of the table, see `shorthand`. `NOUN`: what is expected, in messages.
+    """
+
+    model_config = ConfigDict(extra="forbid", frozen=True)
+
+    ONE_OF: ClassVar[tuple[OneOf, ...]] = ()
+    LATER: ClassVar[tuple[str, ...]] = ()
+    NOUN: ClassVar[str] = "a table"
+    SHORT: ClassVar[dict[str, Any] | None] = None
+
+    @classmethod
+    def shorthand(cls, value: Any) -> Any:
+        """The table that `value` stands for, or `value` itself."""
+        return value
+
+    @classmethod
+    def rules(cls, given: dict[str, Any]) -> Iterator[Flaw]:
+        """Rules between the keys as written; asked even where single values are wrong."""
+        return iter(())
+
+    def agree(self) -> Iterator[Flaw]:
+        """Rules between values; asked only where each value is right by itself."""
+        return iter(())
+
+    @classmethod
+    def keys(cls) -> dict[str, FieldInfo]:
+        """The table's keys as written in a shot file."""
+        return {info.alias or name: info for name, info in cls.model_fields.items()}
+
+    @classmethod
+    def __get_pydantic_json_schema__(cls, schema: Any, handler: Any) -> dict[str, Any]:
+        found: dict[str, Any] = handler(schema)
+        whole = handler.resolve_ref_schema(found)
+        rules = [alternatives.json() for alternatives in cls.ONE_OF]
+        if rules:
+            whole["allOf"] = rules
+        return found if cls.SHORT is None else {"anyOf": [cls.SHORT, found]}
+
+    @classmethod
+    def is_list(cls, name: str) -> bool:
+        """Whether a key holds a list of tables."""
+        info = cls.keys().get(name)
+        return info is not None and get_origin(info.annotation) is list
+
+    @model_validator(mode="wrap")
+    @classmethod
+    def _read(cls, value: Any, handler: ValidatorFunctionWrapHandler) -> Self:
+        if isinstance(value, cls):
+            return value
+        table = cls.shorthand(value)
+        if not isinstance(table, dict):
+            raise _custom([refusal(value, cls.NOUN)])
+        known = cls.keys()
+        flaws = [cls._unknown(name, known) for name in table if name not in known]
+        given = {name: entry for name, entry in table.items() if name in known}
+        for alternatives in cls.ONE_OF:
+            flaws += alternatives.flaws(set(given))
+        flaws += cls.rules(given)
+        try:
+            model: Self = handler(given)
+        except ValidationError as error:
+            raise _custom(flaws + _flaws_of(error, cls)) from None
+        if not flaws:
+            flaws += model.agree()
+        if flaws:
+            raise _custom(flaws)
+        return model
+
+    @classmethod
+    def _unknown(cls, name: str, known: dict[str, FieldInfo]) -> Flaw:
+        """The flaw of a key that is not known, or not supported yet."""
+        if name in cls.LATER:
+            return Flaw((name,), f"`{name}` is not supported yet", "")
+        for ending in UNIT_ENDINGS:
+            stem = name.removesuffix(ending)
+            if stem != name and stem in known:
+                leaf = leaf_of(known[stem])
+                return Flaw((name,), f"no key is named `{name[:60]}`", leaf.expects() if leaf else "", stem)
+        near = nearest_name(name, known)
+        return Flaw((name,), f"no key is named `{name[:60]}`", "" if near else f"one of {', '.join(known)}", near)
+
+
+def _custom(flaws: list[Flaw]) -> PydanticCustomError:
+    return PydanticCustomError("flaws", "see the flaws", {"flaws": tuple(flaws)})
+
+
+def _flaws_of(error: ValidationError, table: type[Table]) -> list[Flaw]:
+    """Every flaw that pydantic collected below `table`."""
+    found: list[Flaw] = []
+    for item in error.errors(include_url=False, include_input=True):
+        at: Path = item["loc"]
+        if item["type"] == "flaws":
+            found += below(at, item["ctx"]["flaws"])
+        elif item["type"] == "missing":
+            info = table.keys()[str(at[-1])]
+            leaf = leaf_of(info)
+            found.append(Flaw(at[:-1], f"`{at[-1]}` is missing", leaf.expects() if leaf else "a table"))
+        elif item["type"] in ("list_type", "dict_type"):
+            expected = "a list of tables" if item["type"] == "list_type" else "a table of tables"
+            found.append(refusal(item["input"], expected, at))
+        elif item["type"] == "too_long":
+            limit = item["ctx"]["max_length"]
+            found.append(
+                Flaw(at, f"`{{key}}` has {item['ctx']['actual_length']:,} entries", f"at most {limit:,} entries")
+            )
+        else:  # a kind of error that no table of ours can give: our own fault, not the user's
+            raise error
+    return found
+
+
+def find(errors: ValidationError) -> list[Flaw]:
+    """The flaws of a whole shot file."""
+    found: list[Flaw] = []
+    for item in errors.errors(include_url=False, include_input=False):
+        found += below(item["loc"], item["ctx"]["flaws"])
+    return found

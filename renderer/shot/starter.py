@@ -1,0 +1,17 @@
+"""The commented shot that `antisolar new` writes: shapes only, so that it renders as it stands."""
+
+from __future__ import annotations
+
+import json
+from pathlib import Path
+
+FILE = Path(__file__).with_name("starter.shot.toml")
+TITLE = '"Lock Nine, sill"'
+
+
+def starter_text(name: str) -> str:
+    """The starter shot, titled `name`; its comments speak of the file NAME.shot.toml."""
+    stem = Path(name).name.removesuffix(".toml").removesuffix(".shot")
+    title = json.dumps(stem, ensure_ascii=False)  # a JSON string is a TOML string
+    text = FILE.read_text(encoding="utf-8").replace(TITLE, title)
+    return text.replace("NAME.shot.toml", f"{stem}.shot.toml" if stem.isprintable() else "NAME.shot.toml")
