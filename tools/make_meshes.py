@@ -83,7 +83,7 @@ MESHES: dict[str, Callable[[], Made]] = {
     "rod_of_light/rod.ply": lambda: glassware.bent_rod(0.0115, 48),
     "rod_of_light/lamp_box.ply": lamp_box,
     "wet_setts/setts.glb": lambda: town.setts(7, 26, 44, (0.17, 0.1, 0.105)),
-    "wet_setts/houses.glb": lambda: town.row_of_houses(9, 4),
+    "wet_setts/houses.glb": lambda: town.row_of_houses(9, 4, n_lit=2),
     "wet_setts/bollard.ply": town.bollard,
     "bow_beside_sun/houses.glb": lambda: town.row_of_houses(4, 9),
     "bow_beside_sun/lamp.glb": town.lamp_post,

@@ -58,8 +58,11 @@ def house(random: Random, width_m: float, wall: str) -> dict[str, list[Mesh]]:
     return parts
 
 
-def row_of_houses(seed: int, n_houses: int) -> dict[str, Mesh]:
-    """A terrace along x, fronts at z = 0 facing +z, centred on x = 0, standing on y = 0; parts by look."""
+def row_of_houses(seed: int, n_houses: int, n_lit: int = 0) -> dict[str, Mesh]:
+    """A terrace along x, fronts at z = 0 facing +z, centred on x = 0, standing on y = 0; parts by look.
+
+    The glazing of the `n_lit` windows nearest to the middle of the pavement is a part of its own, `lit`.
+    """
     random = Random(seed)
     widths = [4.4 + 2.4 * random.random() for _ in range(n_houses)]
     x = -0.5 * sum(widths)
@@ -69,6 +72,9 @@ def row_of_houses(seed: int, n_houses: int) -> dict[str, Mesh]:
         for look, parts in house(random, width, WALLS[(k + seed) % len(WALLS)]).items():
             together.setdefault(look, []).extend(part.moved(x + width / 2.0, 0.0, set_back) for part in parts)
         x += width
+    if n_lit:
+        together["glazing"].sort(key=lambda pane: float(np.linalg.norm(pane.vertices.mean(axis=0)[:2])))
+        together["lit"], together["glazing"] = together["glazing"][:n_lit], together["glazing"][n_lit:]
     return {look: joined(parts) for look, parts in together.items() if parts}
 
 
