@@ -184,7 +184,7 @@ def clear_sky(
 
 
 def clear_pattern(air: Air, sine: Floats, cos_chi: Floats) -> Floats:
-    """ISO's luminance of a clear sky, any scale: sine of elevation (n_rows,), cos_chi to the sun (n_rows, n_columns)."""
+    """ISO's luminance of a clear sky, any scale, from sines of elevation (n_rows,) and cosines to the sun (2-d)."""
     share = haze_share(air)
     a, b, c, d, e = (first + share * (second - first) for first, second in zip(CLEAR, CLEAR_POLLUTED, strict=True))
     return np.asarray(gradation(sine, a, b)[:, None] * indicatrix(arccosine(cos_chi), cos_chi, c, d, e))

@@ -37,7 +37,7 @@ def test_the_closed_form_is_the_turning_point_of_traced_rays(order, index):
     assert float(ring.slope_deg) == pytest.approx(float(slope), rel=1e-5)
 
 
-# nm, primary, its impact, secondary, its impact: fresh water of 20 C, index relative to air (figures of an independent prototype)
+# nm, primary, its impact, secondary, its impact: fresh water of 20 C relative to air (an independent prototype)
 @pytest.mark.parametrize(
     ("nm", "first", "first_impact", "second", "second_impact"),
     [

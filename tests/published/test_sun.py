@@ -9,8 +9,8 @@ from renderer.base.constants import LUMINOUS_EFFICACY
 from renderer.optics import atmosphere, sun
 from renderer.optics.tables import render_wavelengths_nm, table_column
 
-# ASTM G173-03 (SMARTS 2.9.2, NREL table), direct normal + circumsolar, summed over 20 nm from each edge, every nanometre
-# from the edge to the edge + 19 [W/m2]; zenith angle 48.19, ozone 0.3438 atm-cm, water 1.42 cm, aerosol 0.084 at 500
+# ASTM G173-03 (SMARTS 2.9.2, NREL table), direct normal + circumsolar, summed over 20 nm from each edge, every nm from
+# the edge to the edge + 19 [W/m2]; zenith angle 48.19, ozone 0.3438 atm-cm, water 1.42 cm, aerosol 0.084 at 500
 G173 = {
     380: 9.977,
     400: 18.154,
