@@ -88,6 +88,15 @@ def test_every_command_line_in_the_readme_would_be_accepted() -> None:
         command.make_context(words[0], arguments, resilient_parsing=False)
 
 
+def test_the_finding_in_the_readme_is_what_the_check_says(capsys: pytest.CaptureFixture[str]) -> None:
+    """The example, line by line, as the command prints it."""
+    from renderer.cli.running import run
+
+    (example,) = re.findall(r"^```\n(\[impossible\].*?)^```", page("README.md"), re.MULTILINE | re.DOTALL)
+    assert run(["check", str(ROOT / "scenes/bow_beside_sun/bow_beside_sun.shot.toml")]) == 1
+    assert example in capsys.readouterr().out
+
+
 def test_the_table_of_shots_has_every_shot() -> None:
     """One row a folder of scenes/, linked to its file."""
     table = page("README.md").split("## The shipped shots")[1].split("\n## ")[0]
