@@ -31,9 +31,9 @@ def load_shot(
 
 def json_schema() -> dict[str, Any]:
     """The JSON Schema of a shot file, for completion and checking in editors."""
-    from renderer.shot import json_schema as door
+    from renderer.shot import schema_export
 
-    return door.json_schema()
+    return schema_export.json_schema()
 
 
 def reference_page() -> str:

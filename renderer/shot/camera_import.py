@@ -99,7 +99,7 @@ def _camera(document: Any, node_name: str) -> ImportedCamera:
     camera = cameras[_index(nodes[chosen[0]]["camera"], cameras) or 0]
     view = camera.get("perspective")
     yfov = view.get("yfov") if isinstance(view, dict) else None
-    if not is_number(yfov) or not 0.0 < float(yfov) < math.pi:
+    if yfov is None or not is_number(yfov) or not 0.0 < float(yfov) < math.pi:
         raise _Refused(f"`{KEY}` names a camera without perspective", "a perspective camera with a yfov")
     return ImportedCamera(_rigid(_world(nodes, chosen[0])), float(yfov))
 

@@ -8,6 +8,7 @@ rounds do not count; neither does where files lie or what they are called.
 from __future__ import annotations
 
 import hashlib
+from pathlib import Path
 from typing import Any
 
 from renderer.shot.camera_import import split_node
@@ -55,7 +56,7 @@ def _file_text(name: FileName, moment: Moment) -> str:
     """A file by its content; an empty text where it is missing, which is an error told elsewhere."""
     plain, node = split_node(name)
     found = moment.files.find(plain, moment.frame)
-    content = "" if not hasattr(found, "is_file") else moment.files.content(found)
+    content = moment.files.content(found) if isinstance(found, Path) else ""
     return f"file {content} {node!r}"
 
 

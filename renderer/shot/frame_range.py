@@ -41,10 +41,10 @@ def _count(part: str, text: str) -> int:
 
 def frames_of(text: str) -> tuple[int, ...]:
     """The frames that `text` names, rising, each once; raises `Flawed`."""
-    import fileseq
+    from fileseq.frameset import FrameSet
 
     check_range(text)
-    return tuple(sorted({int(frame) for frame in fileseq.FrameSet(text.replace(" ", ""))}))
+    return tuple(sorted({int(frame) for frame in FrameSet(text.replace(" ", ""))}))
 
 
 def parse_frames(text: str, where: str = "--frames") -> tuple[int, ...]:

@@ -14,7 +14,7 @@ Coefficients = tuple[float, float, float, float, float]
 
 
 def pixel_direction(camera: Camera, column: float, row: float) -> Vector | None:
-    """Unit world direction of a place in the full frame, from the top left; None where distortion shows nothing there."""
+    """Unit world direction of a place in the full frame, from the top left; None where the lens shows nothing there."""
     (width, height), (columns, rows) = camera.sensor_mm, camera.pixels
     x = (column / columns - 0.5) * width / camera.focal_length_mm
     y = (0.5 - row / rows) * height / camera.focal_length_mm
@@ -28,7 +28,9 @@ def pixel_direction(camera: Camera, column: float, row: float) -> Vector | None:
 
 
 def straighten(lens: Coefficients, x_shown: float, y_shown: float) -> tuple[float, float] | None:
-    """The ideal image point that a lens shows at (x, y), in focal lengths, by Newton's method; None where there is none.
+    """The ideal image point that a lens shows at (x, y), in focal lengths; None where there is none.
+
+    By Newton's method, inside the radius at which the picture folds.
 
     The polynomial is that of D. C. Brown, Photogrammetric Engineering 32(3), 1966, from ideal to shown.
     """
@@ -44,7 +46,7 @@ def straighten(lens: Coefficients, x_shown: float, y_shown: float) -> tuple[floa
         yy = radial + 2.0 * y * y * slope + 6.0 * p1 * y + 2.0 * p2 * x
         determinant = xx * yy - xy * xy
         if max(abs(miss_x), abs(miss_y)) < CONVERGED:
-            return (x, y) if determinant > 0.0 and radial > 0.0 else None
+            return (x, y) if x * x + y * y <= fold(lens) else None
         if determinant == 0.0:
             return None
         x -= (miss_x * yy - miss_y * xy) / determinant
@@ -52,3 +54,11 @@ def straighten(lens: Coefficients, x_shown: float, y_shown: float) -> tuple[floa
         if not abs(x) + abs(y) < 1e6:
             return None
     return None
+
+
+def fold(lens: Coefficients) -> float:
+    """Squared ideal radius at which the radial polynomial turns back; infinite if never."""
+    k1, k2, k3 = lens[:3]
+    roots = np.roots([7.0 * k3, 5.0 * k2, 3.0 * k1, 1.0])  # d/dr of r (1 + k1 r^2 + k2 r^4 + k3 r^6), in r^2
+    real = roots.real[(np.abs(roots.imag) < 1e-12 * np.maximum(1.0, np.abs(roots.real))) & (roots.real > 0.0)]
+    return float(real.min()) if len(real) else float("inf")

@@ -62,8 +62,9 @@ class Sun:
 
 @dataclass(frozen=True)
 class Sky:
-    """`kind`: clear, overcast, uniform, picture or none. `radiance_rgb` (Rec.709) scales a uniform sky, [cd/m2] at white;
-    `scale` multiplies every kind; `turn_deg` turns a picture clockwise seen from above."""
+    """`kind`: clear, overcast, uniform, picture or none. `encoding` is the scene-linear space of the picture: rec709,
+    rec2020, acescg or xyz. `scale` multiplies every kind; `turn_deg` turns a picture clockwise seen from above.
+    """
 
     kind: str
     luminance: float  # [cd/m2], of a uniform sky
@@ -115,7 +116,7 @@ class Surface:
 
 @dataclass(frozen=True)
 class Emission:
-    """What an area light gives: luminance [cd/m2] seen straight on, with the colour of exactly one of: colour (Rec.709 RGB),
+    """What an area light gives: luminance [cd/m2], with the colour of exactly one of: colour (Rec.709 RGB),
     temperature_k (black body), spectrum ((nm, relative), ...), or lines alone ((nm, share of the luminance), ...).
 
     Where spectrum or colour stands beside lines, `lines` shares are of the whole luminance and the rest is the other's.
@@ -133,16 +134,17 @@ class Emission:
 class Shape:
     """A built-in shape: `kind` and its sizes by name, lengths in metres, angles in degrees.
 
-    All are about their own origin. box: size (x, y, z); sphere: radius; cylinder (also called rod): radius, height (along y),
-    segments; lens: radius_front, radius_back (positive bulges, negative is hollow, 0 is flat), thickness (of its middle),
-    diameter; along z, front towards +z; prism: apex_deg, side, length (ridge along z, up); tank: outer size (x, y, z), wall,
-    fill (0..1 of the inner height), open towards +y; bowl: outer radius, wall, fill (0..1 of the inner depth), half a
-    spherical shell with its rim level at y = 0, open towards +y. A vessel's shape is its glass only; what stands in it is a
-    second object of kind tank_filling or bowl_filling with the same sizes, which reaches half the wall into the glass
-    and so needs a lower priority than the glass. water_surface: size (x, z), cells (nx, nz), waves ((amplitude,
-    wavelength, direction_deg clockwise from -z seen from above, phase_deg), ...) added up, facing +y, and depth (0 leaves it
-    open, more closes it to a block with a flat bottom at y = -depth); rectangle: size (x, y) facing +z; disc: radius,
-    segments, facing +z. Lengths may be 0 only where this says so.
+    All are about their own origin. box: size (x, y, z); sphere: radius; cylinder (also called rod): radius, height
+    (along y), segments; lens: radius_front, radius_back (positive bulges, negative is hollow, 0 is flat), thickness
+    (of its middle), diameter; along z, front towards +z; prism: apex_deg, side, length (ridge along z, up); tank:
+    outer size (x, y, z), wall, fill (0..1 of the inner height), open towards +y; bowl: outer radius, wall, fill
+    (0..1 of the inner depth), half a spherical shell with its rim level at y = 0, open towards +y. A vessel's shape
+    is its glass only; what stands in it is a second object of kind tank_filling or bowl_filling with the same
+    sizes, which reaches half the wall into the glass and so needs a lower priority than the glass. water_surface:
+    size (x, z), cells (nx, nz), waves ((amplitude, wavelength, direction_deg clockwise from -z seen from above,
+    phase_deg), ...) added up, facing +y, and depth (0 leaves it open, more closes it to a block with a flat bottom
+    at y = -depth); rectangle: size (x, y) facing +z; disc: radius, segments, facing +z. Lengths may be 0 only where
+    this says so.
     """
 
     kind: str
@@ -176,8 +178,10 @@ class Object:
 
 @dataclass(frozen=True)
 class BowToCheck:
-    """A bow as the shot shows it, by geometry. `centre` is a unit world direction (from a direction, or a pixel through
-    the lens, at this frame), None when not stated; `anchored` is "direction", "pixel" or "world" as the shot states it."""
+    """A bow as the shot shows it, by geometry. `centre` is a unit world direction at this frame (from a direction, a
+    pixel through the lens, or a point in the world), None when not stated; `anchored` is "direction", "pixel" or
+    "world", as the shot states it.
+    """
 
     name: str
     order: int

@@ -25,28 +25,29 @@ same schema that checks it, and so is [the JSON Schema](shot.schema.json) that a
 
 - **Units.** Each key has one unit. Lengths are in the unit of `[units] length`; a glTF file is in metres, as its
   standard has it.
-- **Axes.** Up and north are those of `[units]`; azimuth runs clockwise from north, seen from above. The camera looks along
-  its own -z with +y up. Rotations are degrees about x, then y, then z; matrices are row by row.
-- **Keyed values.** Where a key says *keyed*, its value may be a table by frame: `elevation = { 1001 = 12.0, 1048 = 14.5 }`.
-  Between two keys it goes in a straight line, or with `ease = true` among the keys along 3t^2 - 2t^3, starting and stopping
-  softly; before the first and after the last it holds. Angles do not wrap: from 350 to 10 goes back through 180. A keyed
-  matrix turns along the shortest arc. Camera and transforms move while the shutter is open; everything else
-  is taken at the frame.
-- **Paths** are relative to the shot file, with forward slashes. They may not lead out of its folder, or out of the folders
-  given by `--root`, not even through a symbolic link. A run of `#` is the frame number, padded with zeros to as many digits.
-- **Overrides**, in `[variants.NAME]` and by `--override key=value`, name a key by its dotted path. A list of tables is
-  entered by name, `objects.tank.material` (in quotes where it needs them, `objects."my tank".material`), or by number
-  from 0, `objects[0].material`; a list of numbers by number, `camera.position[1]`. A value is written as in TOML; a plain
-  word needs no quotes on the command line. A key that excludes another takes its place: `objects.tank.shape` drops its
-  `mesh`. Overrides of the command line are laid over those of the variant, and all are checked like the file itself; so is
-  every variant, whichever is asked for.
-- **Errors.** An unknown key, a number out of range, a name that is not there: each is an error with its line, and all of a
-  file are told at once. `nan` and `inf` are no values.
-- **What makes a picture another picture.** The fingerprint of a frame covers every value here that changes pixels, and the
-  content of every file. It does not cover titles, names, the checks, the bows, the number of rounds, or where a file lies
-  and what it is called.
-- **Not supported yet:** `droplets`, `volumes`, `beams`, `wedge`, `sun.location`, `picture` of a bow to check, `scattering` of
-  a material.
+- **Axes.** Up and north are those of `[units]`; azimuth runs clockwise from north, seen from above. The camera looks
+  along its own -z with +y up. Rotations are degrees about x, then y, then z; matrices are row by row.
+- **Keyed values.** Where a key says *keyed*, its value may be a table by frame: `elevation = { 1001 = 12.0, 1048 =
+  14.5 }`. Between two keys it goes in a straight line, or with `ease = true` among the keys along 3t^2 - 2t^3,
+  starting and stopping softly; before the first and after the last it holds. Angles do not wrap: from 350 to 10 goes
+  back through 180. A keyed matrix turns along the shortest arc. Camera and transforms move while the shutter is open;
+  everything else is taken at the frame.
+- **Paths** are relative to the shot file, with forward slashes. They may not lead out of its folder, or out of the
+  folders given by `--root`, not even through a symbolic link. A run of `#` is the frame number, padded with zeros to
+  as many digits.
+- **Overrides**, in `[variants.NAME]` and by `--override key=value`, name a key by its dotted path. A list of tables
+  is entered by name, `objects.tank.material` (in quotes where it needs them, `objects."my tank".material`), or by
+  number from 0, `objects[0].material`; a list of numbers by number, `camera.position[1]`. A value is written as in
+  TOML; a plain word needs no quotes on the command line. A key that excludes another takes its place:
+  `objects.tank.shape` drops its `mesh`. Overrides of the command line are laid over those of the variant, and all are
+  checked like the file itself; so is every variant, whichever is asked for.
+- **Errors.** An unknown key, a number out of range, a name that is not there: each is an error with its line, and all
+  of a file are told at once. `nan` and `inf` are no values.
+- **What makes a picture another picture.** The fingerprint of a frame covers every value here that changes pixels,
+  and the content of every file. It does not cover titles, names, the checks, the bows, the number of rounds, or where
+  a file lies and what it is called.
+- **Not supported yet:** `droplets`, `volumes`, `beams`, `wedge`, `sun.location`, `picture` of a bow to check,
+  `scattering` of a material.
 """
 
 

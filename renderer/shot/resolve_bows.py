@@ -52,5 +52,6 @@ def _centre(
             moment.flaws.append(Flaw(("bows_to_check", index, "centre", "point"), what, "a point away from the camera"))
             return None, None, "world"
         return unit(tuple(float(value) for value in away)), None, "world"
-    assert keys.azimuth is not None and keys.elevation is not None
+    assert keys.azimuth is not None
+    assert keys.elevation is not None
     return direction_of(moment.number(keys.elevation), moment.number(keys.azimuth), axes), None, "direction"

@@ -84,7 +84,8 @@ def _matrix(moment: Moment, axes: Axes, base: Matrix, time: float) -> Matrix:
 def _looking(moment: Moment, axes: Axes, time: float) -> Matrix:
     """From a position towards a target, up as far up as it goes; north is up where it looks straight up or down."""
     keys = moment.shot.camera
-    assert keys.position is not None and keys.target is not None
+    assert keys.position is not None
+    assert keys.target is not None
     eye = tuple(value * moment.metres for value in values_at(keys.position, time))
     target = tuple(value * moment.metres for value in values_at(keys.target, time))
     away = tuple(a - b for a, b in zip(eye, target, strict=True))

@@ -41,7 +41,8 @@ def resolve_sun(moment: Moment, axes: Axes) -> Sun | None:
         direction = unit(stated)
         elevation, azimuth = angles_of(direction, axes)
         return Sun(direction, elevation, azimuth, visibility)
-    assert keys.elevation is not None and keys.azimuth is not None
+    assert keys.azimuth is not None
+    assert keys.elevation is not None
     elevation, azimuth = moment.number(keys.elevation), moment.number(keys.azimuth)
     return Sun(direction_of(elevation, azimuth, axes), elevation, azimuth, visibility)
 

@@ -16,6 +16,7 @@ from renderer.shot.schema.units import LENGTH
 
 MOST_PIXELS = 16_384  # a side
 MOST_OVERSCAN = 4_096
+SENSOR_RANGE = Bounds(above=0, high=10_000)
 SENSOR_SLACK = 0.005  # a height of sensor may be off by half a per cent: data sheets round
 
 
@@ -35,7 +36,7 @@ class Sensor(NumberLeaf):
     """A width, or a width and a height."""
 
     unit_text: str = "mm"
-    bounds: Bounds = Bounds(above=0, high=10_000)
+    bounds: Bounds = SENSOR_RANGE
     may_be_keyed: bool = False
 
     def expects(self) -> str:
@@ -74,7 +75,7 @@ class Exposure(Table):
 
     SHORT: ClassVar = {"const": "auto"}
     NOUN: ClassVar = '"auto", { stops = ... } or { iso = ... }'
-    ONE_OF: ClassVar = (OneOf((("stops",), ("iso",), ("auto",))),)
+    ONE_OF: ClassVar[tuple[OneOf, ...]] = (OneOf((("stops",), ("iso",), ("auto",))),)
 
     stops: Annotated[Scalar | None, Number("stops", Bounds(-60, 60))] = key(
         None,
@@ -107,7 +108,7 @@ class Distortion(Table):
 class Camera(Table):
     """The camera: it looks along its own -z, with +y up in the picture."""
 
-    ONE_OF: ClassVar = (
+    ONE_OF: ClassVar[tuple[OneOf, ...]] = (
         OneOf((("position", "target"), ("matrix",), ("import",))),
         OneOf((("crop",), ("overscan",)), needed=False),
     )
@@ -205,7 +206,8 @@ class Camera(Table):
         """A height that would stretch the picture."""
         if len(self.sensor) == 2 and abs(self.sensor[1] / self.fitting_height() - 1.0) > SENSOR_SLACK:
             columns, rows = self.pixels
-            what = f"`{{key}}` is {self.sensor[1]:g} mm high, which stretches {columns} x {rows} pixels of aspect {self.pixel_aspect:g}"
+            shape = f"{columns} x {rows} pixels of aspect {self.pixel_aspect:g}"
+            what = f"`{{key}}` is {self.sensor[1]:g} mm high, which stretches {shape}"
             aspect = self.sensor[0] / columns / (self.sensor[1] / rows)
             height = self.fitting_height()
             yield Flaw(

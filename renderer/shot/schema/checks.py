@@ -21,7 +21,7 @@ class Centre(Table):
     """Where the centre of a bow stands."""
 
     NOUN: ClassVar = "a table, as in { azimuth = 25.0, elevation = -24.0 }"
-    ONE_OF: ClassVar = (OneOf((("azimuth", "elevation"), ("pixel",), ("point",))),)
+    ONE_OF: ClassVar[tuple[OneOf, ...]] = (OneOf((("azimuth", "elevation"), ("pixel",), ("point",))),)
 
     azimuth: Annotated[Scalar | None, Number("degrees")] = key(None, "Clockwise from north; with `elevation`", "25.0")
     elevation: Annotated[Scalar | None, Number("degrees", Bounds(-90, 90))] = key(

@@ -20,7 +20,7 @@ class RefractiveIndex(Table):
 
     SHORT: ClassVar = {"type": "number", **INDEX.json()}
     NOUN: ClassVar = "a number from 0.5 to 5, or a table"
-    ONE_OF: ClassVar = (OneOf((("constant",), ("abbe",), ("cauchy",), ("sellmeier",), ("table",))),)
+    ONE_OF: ClassVar[tuple[OneOf, ...]] = (OneOf((("constant",), ("abbe",), ("cauchy",), ("sellmeier",), ("table",))),)
 
     constant: Annotated[Scalar | None, Number("", INDEX)] = key(
         None, "The same at every wavelength; a number in place of the table says the same", "1.5"

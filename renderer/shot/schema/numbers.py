@@ -331,7 +331,8 @@ class Pairs(Leaf):
 
     def expects(self) -> str:
         tail = NumberLeaf(self.unit_text, self.bounds).tail()
-        return f"pairs [[nm, {self.of}], ...], wavelengths rising from {self.lowest_nm:g} to {self.highest_nm:g} nm, {self.of}{tail}"
+        rising = f"wavelengths rising from {self.lowest_nm:g} to {self.highest_nm:g} nm"
+        return f"pairs [[nm, {self.of}], ...], {rising}, {self.of}{tail}"
 
     def read(self, value: Any) -> tuple[tuple[float, float], ...]:
         if not isinstance(value, list):

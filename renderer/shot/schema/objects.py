@@ -23,7 +23,7 @@ MOST_PLACEMENTS = 100_000
 class Transform(Table):
     """Where an object stands: scaled first, then turned, then moved."""
 
-    ONE_OF: ClassVar = (OneOf((("translation", "rotation", "scale"), ("matrix",)), needed=False),)
+    ONE_OF: ClassVar[tuple[OneOf, ...]] = (OneOf((("translation", "rotation", "scale"), ("matrix",)), needed=False),)
 
     translation: Annotated[Values, Vector(LENGTH)] = key((0.0, 0.0, 0.0), "Moved along x, y and z", "[0.0, 0.8, -4.0]")
     rotation: Annotated[Values, Vector("degrees")] = key(
@@ -34,7 +34,8 @@ class Transform(Table):
     )
     matrix: Annotated[Values | None, Vector("", count=16)] = key(
         None,
-        "In place of these: object to world, 16 numbers row by row; 4, 8 and 12 are the position in the shot's unit of length",
+        "In place of these: object to world, 16 numbers row by row; 4, 8 and 12 are the position in the shot's unit"
+        " of length",
         "[1, 0, 0, 0.0,  0, 1, 0, 0.8,  0, 0, 1, -4.0,  0, 0, 0, 1]",
     )
 
@@ -65,7 +66,8 @@ class Placed(Table):
     transform: Transform = key(Transform(), "Where it stands", "{ translation = [0.0, 0.8, -4.0] }", "at the origin")
     placements: Annotated[list[Transform] | None, Field(max_length=MOST_PLACEMENTS)] = key(
         None,
-        "Many copies that share one mesh: a list of transforms, each followed by `transform`; they are named NAME[0], NAME[1]...",
+        "Many copies that share one mesh: a list of transforms, each followed by `transform`; they are named NAME[0],"
+        " NAME[1]...",
         "[{ translation = [0.0, 0.0, 0.0] }, { translation = [1.0, 0.0, 0.0] }]",
         "one",
     )
@@ -84,7 +86,7 @@ class Placed(Table):
 class Object(Placed):
     """A solid, a pane, a sheet of water, or an opaque or shining thing."""
 
-    ONE_OF: ClassVar = (
+    ONE_OF: ClassVar[tuple[OneOf, ...]] = (
         Placed.FORM,
         OneOf((("material",), ("below",), ("surface",), ("emission",))),
     )
@@ -151,4 +153,4 @@ class Object(Placed):
 class Light(Placed, Emission):
     """A shining surface: an object with `emission`, written shorter."""
 
-    ONE_OF: ClassVar = (Placed.FORM, *Emission.ONE_OF)
+    ONE_OF: ClassVar[tuple[OneOf, ...]] = (Placed.FORM, *Emission.ONE_OF)

@@ -159,7 +159,7 @@ class Shape(Table):
     """A built-in shape: exactly one of these."""
 
     NOUN: ClassVar = "a table with one shape, as in { sphere = 0.1 }"
-    ONE_OF: ClassVar = (
+    ONE_OF: ClassVar[tuple[OneOf, ...]] = (
         OneOf(
             tuple(
                 (name,)

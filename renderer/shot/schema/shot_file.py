@@ -97,6 +97,9 @@ class ShotFile(Table):
     def rules(cls, given: dict[str, Any]) -> Iterator[Flaw]:
         yield from repeated_names(given)
         yield from unknown_materials(given)
+        sky = given.get("sky")
+        if isinstance(sky, dict) and sky.get("kind") == "clear" and "sun" not in given:
+            yield Flaw(("sky", "kind"), "a clear sky needs a sun", "a [sun] table, or another kind of sky")
 
     def agree(self) -> Iterator[Flaw]:
         total = sum(len(item.placements or [0]) for item in (*self.objects, *self.lights))

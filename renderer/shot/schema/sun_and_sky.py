@@ -19,7 +19,7 @@ class Sun(Table):
     """The sun, a disc of its true size. Without this table there is none."""
 
     LATER: ClassVar = ("location",)
-    ONE_OF: ClassVar = (OneOf((("elevation", "azimuth"), ("direction",))),)
+    ONE_OF: ClassVar[tuple[OneOf, ...]] = (OneOf((("elevation", "azimuth"), ("direction",))),)
 
     elevation: Annotated[Scalar | None, Number("degrees", Bounds(-90, 90))] = key(
         None, "Height of the sun's centre above the horizon, as seen through the air; with `azimuth`", "24.0"

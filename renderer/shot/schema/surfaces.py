@@ -19,7 +19,7 @@ SPACES = ("rec709", "rec2020", "acescg")
 class Surface(Table):
     """What light meets on an opaque object."""
 
-    ONE_OF: ClassVar = (OneOf((("reflectance",), ("spectrum",), ("picture",))),)
+    ONE_OF: ClassVar[tuple[OneOf, ...]] = (OneOf((("reflectance",), ("spectrum",), ("picture",))),)
 
     reflectance: Annotated[Values | None, Vector("", SHARE, single=True)] = key(
         None, "Linear RGB, or one number for grey", "[0.30, 0.27, 0.24]"
@@ -56,7 +56,7 @@ class Surface(Table):
 class Emission(Table):
     """The light that a surface gives, alike in every direction."""
 
-    ONE_OF: ClassVar = (OneOf((("colour",), ("temperature",), ("spectrum",)), needed=False),)
+    ONE_OF: ClassVar[tuple[OneOf, ...]] = (OneOf((("colour",), ("temperature",), ("spectrum",)), needed=False),)
 
     luminance: Annotated[Scalar, Number("cd/m2", Bounds(0, 1e10))] = key(..., "Brightness of the surface", "5000.0")
     colour: Annotated[Values | None, Vector("", Bounds(0, 1e6), single=True)] = key(

@@ -75,8 +75,8 @@ def leaf_of(info: FieldInfo) -> Leaf | None:
 class Table(BaseModel):
     """A table of the shot file. Subclasses state their keys, and what rules there are between them.
 
-    `ONE_OF`: keys that exclude each other. `LATER`: keys that are known but not supported yet. `SHORT`: the JSON Schema of
-    what may be written in place of the table, see `shorthand`. `NOUN`: what is expected, in messages.
+    `ONE_OF`: keys that exclude each other. `LATER`: keys that are known but not supported yet. `SHORT`: the JSON Schema
+    of what may be written in place of the table, see `shorthand`. `NOUN`: what is expected, in messages.
     """
 
     model_config = ConfigDict(extra="forbid", frozen=True)

@@ -5,9 +5,10 @@ from __future__ import annotations
 from collections.abc import Iterator
 from typing import Annotated
 
+from renderer.shot.schema.flaws import Flaw
 from renderer.shot.schema.leaves import Choice, FrameRange
 from renderer.shot.schema.numbers import Bounds, Number
-from renderer.shot.schema.table import Flaw, Table, key
+from renderer.shot.schema.table import Table, key
 
 LENGTH = "the shot's unit of length"
 
