@@ -90,3 +90,20 @@ def observer():
     """CIE 1931 observer, (401, 3), from colour-science (CIE 018:2019)."""
     colour = pytest.importorskip("colour")
     return colour.MSDS_CMFS["CIE 1931 2 Degree Standard Observer"].align(colour.SpectralShape(380, 780, 1)).values
+
+
+# lux of a clear evening by the same almanac section: civil, nautical twilight's ends are about 3.4 and 0.008 lx (from memory)
+@pytest.mark.parametrize(
+    ("elevation_deg", "lux", "within"), [(-3.0, 79.0, 0.12), (-6.0, 3.4, 0.15), (-12.0, 0.008, 0.25)]
+)
+def test_twilight(elevation_deg, lux, within):
+    coefficients, basis = sky.clear_sky(elevation_deg, 0.0, 23.0)
+    weights = sky.level_irradiance_weights(*sky.sine_cosine_deg(sky.rows_deg()))
+    level = float(sky.luminance_of(sky.from_level_irradiance(coefficients @ basis, weights)))
+    assert level == pytest.approx(lux, rel=within)
+
+
+@pytest.mark.parametrize("joint_deg", [0.0, -0.8, -5.0])
+def test_twilight_joins_without_a_step(joint_deg):
+    above, below = skylight.twilight_factor(joint_deg + 1e-9), skylight.twilight_factor(joint_deg - 1e-9)
+    assert above == pytest.approx(below, rel=0.05)  # the published pieces meet to 4 %
