@@ -78,16 +78,20 @@ def material_names() -> tuple[str, ...]:
     return tuple(entry.name for entry in library())
 
 
+def accepted_names() -> tuple[str, ...]:
+    """Every first name and alias as written; `library_entry` takes them in any case."""
+    return tuple(name for entry in library() for name in (entry.name, *entry.aliases))
+
+
 def library_entry(name: str) -> LibraryEntry:
     """The entry of a material by its name or alias, whatever the case; InputError with the nearest name for none."""
     found = known_names().get(name.strip().lower())
     if found is None:
-        every = [known for entry in library() for known in (entry.name, *entry.aliases)]
         raise InputError(
             Fault(
                 f'no material named "{name}"',
                 expected='a name from "antisolar materials"',
-                nearest=nearest_name(name, every),
+                nearest=nearest_name(name, accepted_names()),
             )
         )
     return found

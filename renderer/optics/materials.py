@@ -14,11 +14,19 @@ import numpy.typing as npt
 from renderer.base.constants import FRAUNHOFER_C_NM, FRAUNHOFER_D_NM, FRAUNHOFER_F_NM
 from renderer.base.errors import Fault, InputError
 from renderer.optics import dispersion
-from renderer.optics.library import LibraryEntry, library_entry, material_names
+from renderer.optics.library import LibraryEntry, accepted_names, library_entry, material_names
 from renderer.optics.tables import between_lines, render_wavelengths_nm, table_column
 from renderer.optics.water import water_absorption_per_m, water_index
 
-__all__ = ["LibraryEntry", "index_at", "library_entry", "material_names", "material_tables", "nd_and_vd"]
+__all__ = [
+    "LibraryEntry",
+    "accepted_names",
+    "index_at",
+    "library_entry",
+    "material_names",
+    "material_tables",
+    "nd_and_vd",
+]
 
 Floats = npt.NDArray[np.float64]
 Values = Sequence[float] | Sequence[tuple[float, float]]

@@ -92,7 +92,7 @@ def observer():
     return colour.MSDS_CMFS["CIE 1931 2 Degree Standard Observer"].align(colour.SpectralShape(380, 780, 1)).values
 
 
-# lux of a clear evening by the same almanac section: civil, nautical twilight's ends are about 3.4 and 0.008 lx (from memory)
+# lux of a clear evening by the same almanac section: civil and nautical twilight end at 3.4 and 0.008 lx (memory)
 @pytest.mark.parametrize(
     ("elevation_deg", "lux", "within"), [(-3.0, 79.0, 0.12), (-6.0, 3.4, 0.15), (-12.0, 0.008, 0.25)]
 )

@@ -33,7 +33,7 @@ def test_the_names_that_shots_use_are_there():
         " Water ",
     ):
         assert library.library_entry(alias)
-    every = [name.lower() for entry in library.library() for name in (entry.name, *entry.aliases)]
+    every = [name.lower() for name in library.accepted_names()]
     assert len(every) == len(set(every))
 
 
