@@ -169,10 +169,16 @@ def duplicates(corners: Indices) -> int:
     """Triangles that repeat another one's three positions, in any order."""
     if not len(corners):
         return 0
-    ordered = np.sort(corners, axis=1)
-    order = np.lexsort((ordered[:, 2], ordered[:, 1], ordered[:, 0]))
-    ordered = ordered[order]
-    return int((ordered[1:] == ordered[:-1]).all(axis=1).sum())
+    low, high = corners.min(axis=1), corners.max(axis=1)
+    middle = corners.sum(axis=1, dtype=np.int64) - low - high
+    key = (low.astype(np.int64) << 32) | high
+    order = np.argsort(key, kind="stable")
+    key, middle = key[order], middle[order]
+    start = np.flatnonzero(np.diff(key, prepend=-1))
+    for at in start[np.diff(np.append(start, len(key))) > 2]:  # rare: more than two triangles on one pair of positions
+        end = at + np.searchsorted(key[at:], key[at], side="right")
+        middle[at:end].sort()
+    return int(((key[1:] == key[:-1]) & (middle[1:] == middle[:-1])).sum())
 
 
 def component_labels(corners: Indices, n_positions: int) -> Ids:
@@ -209,8 +215,11 @@ def shells(vertices: Floats, faces: Indices, label: Ids) -> tuple[Ids, Floats, F
         volumes += np.bincount(part, (normal * (points[:, 0] - middle)).sum(axis=1) / 6.0, minlength=len(names))
         area += float(double_area.sum()) / 2.0
         degenerate += int((double_area <= DEGENERATE * longest).sum())
-        np.minimum.at(low, part, points.min(axis=1))
-        np.maximum.at(high, part, points.max(axis=1))
+        order = np.argsort(part, kind="stable")
+        begin = np.flatnonzero(np.diff(part[order], prepend=-1))
+        here = part[order[begin]]
+        low[here] = np.minimum(low[here], np.minimum.reduceat(points.min(axis=1)[order], begin))
+        high[here] = np.maximum(high[here], np.maximum.reduceat(points.max(axis=1)[order], begin))
     return names, volumes, low, high, area, degenerate
 
 

@@ -20,6 +20,9 @@ from renderer.geometry.positions import Floats, position_groups
 
 Raw = dict[str, Any]
 
+NUMBERS_END = "could not be read to its end"  # NumPy's words, as a warning or an error by version
+FARTHEST_M = 1e9  # beyond, squares of squares of distances leave few digits
+
 
 def load_mesh(
     path: Path, nodes: tuple[str, ...] = (), metres_per_unit: float = 1.0, smooth: bool = False
@@ -37,19 +40,13 @@ def load_parts(
     path: Path, nodes: tuple[str, ...] = (), metres_per_unit: float = 1.0, smooth: bool = False
 ) -> list[Part]:
     """As `load_mesh`, but what a file places many times is one asset with many matrices."""
-    parts = read_parts(path, nodes, metres_per_unit, smooth)
-    for part in parts:
-        used = part.asset.vertices_m
-        if not np.isfinite(used).all():
-            bad = int((~np.isfinite(used).all(axis=1)).sum())
-            raise refuse(
-                path, f"{bad:,} of {len(used):,} vertices of the mesh are not finite numbers", "finite numbers"
-            )
-    return parts
+    return read_parts(path, nodes, metres_per_unit, smooth, refuse_holes=True)
 
 
-def read_parts(path: Path, nodes: tuple[str, ...], metres_per_unit: float, smooth: bool) -> list[Part]:
-    """The parts of a file, whose vertices may still be not-a-number."""
+def read_parts(
+    path: Path, nodes: tuple[str, ...], metres_per_unit: float, smooth: bool, refuse_holes: bool = False
+) -> list[Part]:
+    """The parts of a file; vertices without a place are not-a-number, unless they are to be refused."""
     entries = scene_of(path)
     named = [entry for entry in entries if not nodes or not set(nodes).isdisjoint(entry[1])]
     if not named:
@@ -63,7 +60,7 @@ def read_parts(path: Path, nodes: tuple[str, ...], metres_per_unit: float, smoot
     parts = []
     for raw, names, matrix in named:
         if id(raw) not in assets:
-            assets[id(raw)] = asset_from(path, raw, metres_per_unit, smooth)
+            assets[id(raw)] = asset_from(path, raw, metres_per_unit, smooth, refuse_holes)
         matrix = matrix.copy()
         matrix[:, 3] *= metres_per_unit
         parts.append(Part(names[0], assets[id(raw)], matrix))
@@ -82,7 +79,7 @@ def scene_of(path: Path) -> list[tuple[Raw, tuple[str, ...], Floats]]:
         )
     check_size(path)
     with warnings.catch_warnings():
-        warnings.simplefilter("error", DeprecationWarning)  # NumPy's word for numbers that it could not read to the end
+        warnings.simplefilter("error", DeprecationWarning)  # of numbers that end too soon
         warnings.simplefilter("ignore", RuntimeWarning)
         try:
             raw = READERS[kind](path)
@@ -91,18 +88,18 @@ def scene_of(path: Path) -> list[tuple[Raw, tuple[str, ...], Floats]]:
         except MemoryError as error:
             raise refuse(path, "the mesh is too large for this machine's memory") from error
         except Exception as error:  # whatever the reader trips over, a person gets one sentence
-            raise refuse(
-                path, f"the mesh cannot be read ({first_line(error)})", f"a {kind[1:].upper()} file that is whole"
-            ) from error
+            raise refuse(path, f"the mesh cannot be read ({reason(error)})", f"a whole {kind[1:].upper()} file") from error
     entries = list(placements(path, raw))
     if not entries:
         raise refuse(path, "the mesh has no faces", "at least one triangle")
     return entries
 
 
-def first_line(error: Exception) -> str:
+def reason(error: Exception) -> str:
     """What a library's error says, short."""
     text = str(error).strip().splitlines()
+    if text and NUMBERS_END in text[0]:
+        return "it has words where numbers belong"
     return (text[0] if text else type(error).__name__)[:120]
 
 
@@ -198,7 +195,7 @@ def matrix_of(edge: Raw) -> Floats:
     return np.array(matrix[:3, :4])
 
 
-def asset_from(path: Path, raw: Raw, metres_per_unit: float, smooth: bool) -> TriangleAsset:
+def asset_from(path: Path, raw: Raw, metres_per_unit: float, smooth: bool, refuse_holes: bool) -> TriangleAsset:
     """Checked arrays of one mesh."""
     vertices = np.array(raw["vertices"], dtype=np.float64).reshape(-1, 3)
     faces = triangles(raw["faces"])
@@ -214,14 +211,14 @@ def asset_from(path: Path, raw: Raw, metres_per_unit: float, smooth: bool) -> Tr
             f"0 to {len(vertices) - 1}",
         )
     faces = faces.astype(np.int32)
-    settle_unused(vertices, faces)
     vertices *= metres_per_unit
+    whole = settle(path, vertices, faces, refuse_holes)
     uvs = rows_or_none(getattr(raw.get("visual"), "uv", None), len(vertices), 2)
     normals = rows_or_none(raw.get("vertex_normals"), len(vertices), 3)
-    if not smooth:
+    if not smooth or not whole:
         normals = np.zeros((0, 3))
     elif not len(normals) or not usable(normals):
-        source, faces, normals = smooth_normals(np.nan_to_num(vertices), faces)
+        source, faces, normals = smooth_normals(vertices, faces)
         vertices, uvs = vertices[source], uvs[source] if len(uvs) else uvs
     else:
         normals = unit_rows(normals)
@@ -237,13 +234,24 @@ def triangles(faces: Any) -> Any:
     return np.asarray(faces).reshape(-1, 3)
 
 
-def settle_unused(vertices: Floats, faces: Any) -> None:
-    """Put vertices that no triangle uses, and that are not finite, onto one that is used: they are nothing to see."""
-    if np.isfinite(vertices).all():
-        return
+def settle(path: Path, vertices: Floats, faces: Any, refuse_holes: bool) -> bool:
+    """Whether all vertices have a place, nearer than FARTHEST_M.
+
+    Those without one become not-a-number, or an `InputError`; unless no triangle uses them: they go where one is used.
+    """
+    good = (np.abs(vertices) < FARTHEST_M).all(axis=1)
+    if good.all():
+        return True
     used = np.zeros(len(vertices), dtype=bool)
     used[faces.reshape(-1)] = True
-    vertices[~used] = vertices[int(faces[0, 0])]
+    bad = int((used & ~good).sum())
+    if bad and refuse_holes:
+        what = f"{bad:,} of {len(vertices):,} vertices of the mesh are not finite numbers, or too far away"
+        raise refuse(path, what, f"finite numbers, within {FARTHEST_M:g} m")
+    vertices[~good] = np.nan
+    if used[good].any():
+        vertices[~used] = vertices[np.flatnonzero(used & good)[0]]
+    return bad == 0
 
 
 def rows_or_none(values: Any, n: int, width: int) -> Floats:
