@@ -6,7 +6,7 @@ from collections.abc import Iterator
 
 from renderer.checks import sphere
 from renderer.checks.findings import ADVICE, IMPLAUSIBLE, IMPOSSIBLE, Finding, Fix, Value
-from renderer.checks.places import place_words, sun_values
+from renderer.checks.places import centre_words, sun_values
 from renderer.checks.view import AROUND_SUN, FrameView
 from renderer.shot.model import BowToCheck, Vector
 
@@ -65,16 +65,16 @@ def _is_reflected_light(view: FrameView, centre: Vector) -> bool:
 
 def _fix(view: FrameView, bow: BowToCheck, centre: Vector, belongs: Vector) -> Fix:
     """Both ways out: the centre that this sun asks for, and the sun that this centre asks for."""
-    words, values = place_words(view, belongs)
+    words, values = centre_words(view, bow.name, belongs)
     text = f"Put the centre at {words}"
     sun = centre if bow.order in AROUND_SUN else sphere.opposite(centre)
     sun_at: dict[str, Value] = sun_values(view, sun)
     if sphere.elevation_deg(sun, view.axes) > 0.0:
         text += f"; or put the sun at elevation {sun_at['sun.elevation']}°, azimuth {sun_at['sun.azimuth']}°"
-        values |= sun_at
     else:
+        sun_at = {}
         text += "; no sun above the horizon has a bow with this centre"
-    return Fix(text + ".", values)
+    return Fix(text + ".", values, sun_at)
 
 
 def _no_sun(bow: BowToCheck) -> Finding:

@@ -19,9 +19,9 @@ SPRAY_OR_FOG = (
 
 @dataclass(frozen=True)
 class BowLimits:
-    """Angles in degrees. `radius_deg` runs from the brightest ring to the red edge, since a shot may state either;
-    `reach_deg` is what sea water, fog or flattened drops could still explain; `width_deg` from the luminance's width at
-    half its maximum to the whole band of colour; `no_light_within_deg` of the sun: no point of the bow lies nearer.
+    """Angles in degrees. `radius_deg` is where the brightest ring may lie, `width_deg` its width at half brightness;
+    `reach_deg` is what sea water, fog or flattened drops could still explain; `no_light_within_deg` of the sun: no
+    point of the bow lies nearer to it.
     """
 
     order: int
@@ -46,10 +46,10 @@ LIMITS = {
     1: BowLimits(
         order=1,
         name="primary bow",
-        radius_deg=(40.8, 42.5),  # luminance peak 40.8-42.0, red half-maximum 42.0-42.5
+        radius_deg=(40.8, 42.0),  # the red edge, at half its brightness, is at 42.0-42.5
         typical_deg=41.6,
         reach_deg=(33.0, 42.8),  # from fog of 5 micrometres radius (from memory) to the last of its light
-        width_deg=(1.1, 2.8),  # luminance 1.1-1.8 at half maximum; 2.41 from 400 to 700 nm with the disc
+        width_deg=(1.1, 1.8),
         outer_colour="red",
         highest_sun_deg=41.9,
         last_light_deg=42.8,
@@ -59,10 +59,10 @@ LIMITS = {
     2: BowLimits(
         order=2,
         name="secondary bow",
-        radius_deg=(49.9, 52.9),  # red half-maximum 49.9-50.9, luminance peak 51.1-52.9
+        radius_deg=(51.1, 52.9),  # the red edge, at half its brightness, is at 49.9-50.9
         typical_deg=51.8,
         reach_deg=(49.5, 57.0),  # to sea water at 35 per mille (+1.7) and a spread of drop sizes
-        width_deg=(1.9, 4.4),  # luminance 1.9-3.4 at half maximum; 3.92 from 400 to 700 nm with the disc
+        width_deg=(1.9, 3.4),
         outer_colour="violet",
         highest_sun_deg=52.9,
         last_light_deg=55.0,

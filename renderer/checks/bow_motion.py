@@ -9,7 +9,8 @@ from dataclasses import dataclass, replace
 from renderer.checks import sphere
 from renderer.checks.bow_centre import TOLERANCE_DEG
 from renderer.checks.findings import IMPOSSIBLE, Finding, Fix
-from renderer.checks.places import place_words
+from renderer.checks.keys import bow_key
+from renderer.checks.places import centre_words
 from renderer.checks.view import FrameView
 from renderer.shot.model import BowToCheck, Vector
 
@@ -62,7 +63,11 @@ def _distance_deg(a: Stand, b: Stand) -> float:
 
 
 def _drifting(name: str, first: Stand, worst: Stand, drift_deg: float, stands: Sequence[Stand]) -> Finding:
-    words, values = place_words(worst.view, worst.belongs)
+    words, values = centre_words(worst.view, name, worst.belongs)
+    if (
+        sphere.angle_deg(first.belongs, worst.belongs) > TOLERANCE_DEG
+    ):  # the sun moves: no one centre is right throughout
+        values = {key: value for key, value in values.items() if key != bow_key(name, "centre")}
     finding = Finding(
         rule="bow.follows-camera",
         title="Bow does not follow the camera",

@@ -6,11 +6,12 @@ from collections.abc import Iterator
 
 from renderer.checks.bow_limits import KNOWN_ORDERS, BowLimits, limits_of
 from renderer.checks.findings import IMPLAUSIBLE, IMPOSSIBLE, Finding, Fix
+from renderer.checks.keys import bow_key
 from renderer.checks.view import AROUND_SUN, FrameView
 from renderer.shot.model import BowToCheck
 
 SOURCE_RADIUS = (
-    "Descartes 1637, Les Météores VIII, with the refractive index of IAPWS R9-97 for fresh water of 0 to 30 °C; "
+    "Descartes 1637, Les Météores VIII, with the index of fresh water of 0 to 30 °C (IAPWS R9-97); "
     "limits from full scattering series for drops of 0.1 mm radius and more"
 )
 SOURCE_ORDER = "Newton 1704, Opticks, book I part II, proposition IX"
@@ -45,12 +46,12 @@ def _wrong_radius(bow: BowToCheck, radius_deg: float, limits: BowLimits, excess:
         unit=f"degrees from the {from_what}",
         why=why,
         source=SOURCE_RADIUS,
-        fix=_radius_fix(radius_deg, limits),
+        fix=_radius_fix(bow, radius_deg, limits),
         excess=excess,
     )
 
 
-def _radius_fix(radius_deg: float, limits: BowLimits) -> Fix:
+def _radius_fix(bow: BowToCheck, radius_deg: float, limits: BowLimits) -> Fix:
     """The radius for this order; and the other order, when that is what the stated radius fits."""
     text = f"Give the {limits.name} a radius of {limits.typical_deg}°"
     for other in KNOWN_ORDERS:
@@ -62,9 +63,10 @@ def _radius_fix(radius_deg: float, limits: BowLimits) -> Fix:
         ):
             return Fix(
                 f"{text}; or call it the {limits_of(other).name}, whose radius this is.",
-                {"radius": limits.typical_deg, "order": other},
+                {bow_key(bow.name, "radius"): limits.typical_deg},
+                {bow_key(bow.name, "order"): other},
             )
-    return Fix(f"{text}.", {"radius": limits.typical_deg})
+    return Fix(f"{text}.", {bow_key(bow.name, "radius"): limits.typical_deg})
 
 
 def check_width(view: FrameView, facts: object) -> Iterator[Finding]:
@@ -94,7 +96,7 @@ def _wrong_width(
         unit="degrees",
         why="Water spreads the colours over this width, blurred by the sun's disc; only drops under 0.1 mm widen it.",
         source=SOURCE_RADIUS,
-        fix=Fix(f"Give the {limits.name} a width of {middle}°.", {"width": middle}),
+        fix=Fix(f"Give the {limits.name} a width of {middle}°.", {bow_key(bow.name, "width"): middle}),
         excess=excess,
     )
 
@@ -117,7 +119,8 @@ def check_colour_order(view: FrameView, facts: object) -> Iterator[Finding]:
                 why=f"Water bends red least, which puts it on the {limits.red_side} of the {limits.name}.",
                 source=SOURCE_ORDER,
                 fix=Fix(
-                    f"Turn the colours round: {limits.outer_colour} outside.", {"outer_colour": limits.outer_colour}
+                    f"Turn the colours round: {limits.outer_colour} outside.",
+                    {bow_key(bow.name, "outer_colour"): limits.outer_colour},
                 ),
                 excess=1.0,
             )

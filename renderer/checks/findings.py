@@ -20,11 +20,12 @@ class Fix:
     """The change that would make a finding right: one sentence, and the same as values by the shot file's dotted keys.
 
     `values` holds keys of the shot file where it can ("sun.azimuth": 25.0), so that each works after --override, and
-    plain names for what no key holds ("centre_pixel").
+    plain names for what no key holds ("centre_pixel"). `instead` is another way to the same end, where there is one.
     """
 
     text: str
     values: Mapping[str, Value] = field(default_factory=dict)
+    instead: Mapping[str, Value] = field(default_factory=dict)
 
 
 @dataclass(frozen=True)
@@ -33,8 +34,8 @@ class Finding:
 
     `subject` is the bow, object or material it is about, empty for the shot. `expected` is one value or a range
     (low, high) whose open end is None. `excess` says how far beyond the limit it is, on a scale of the rule's own: of
-    several frames with one finding, the frame with the largest is the one that is shown. `frames` and `worst_frame`
-    are filled in by the run.
+    several frames with one finding, the frame with the largest is the one that is shown, as `worst_frame`, which is
+    None where all are alike. `frames` and `worst_frame` are filled in by the run.
     """
 
     rule: str

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from renderer.checks.findings import ADVICE, IMPOSSIBLE, Finding, Fix
-from renderer.checks.material_rules import key_of
+from renderer.checks.keys import material_key, object_key
 from renderer.checks.view import FrameView
 from renderer.shot.model import Material, Object, Surface
 
@@ -40,7 +40,9 @@ def _amplifying(material: Material) -> Iterator[Finding]:
             unit="per metre",
             why="A negative absorption makes light grow on its way through.",
             source=LAW,
-            fix=Fix("Raise every absorption below 0 to 0.", {key_of(material, "absorption"): {"per_metre": held}}),
+            fix=Fix(
+                "Raise every absorption below 0 to 0.", {material_key(material.name, "absorption"): {"per_metre": held}}
+            ),
             excess=-lowest,
         )
 
@@ -75,16 +77,19 @@ def _bright_surface(item: Object, surface: Surface) -> Iterator[Finding]:
             else "The whitest surfaces made for measuring return 99 %, white paint 80 to 90 %."
         ),
         source=LAW if over else "common practice, no source",
-        fix=_darker(surface, largest),
+        fix=_darker(item, surface, largest),
         excess=largest,
     )
 
 
-def _darker(surface: Surface, largest: float) -> Fix:
+def _darker(item: Object, surface: Surface, largest: float) -> Fix:
     """The same colour, scaled to a good white paint."""
     scale = 0.9 / largest
     if surface.reflectance is not None:
         red, green, blue = (round(part * scale, 4) for part in surface.reflectance)
-        return Fix(f"Scale it down: reflectance = [{red}, {green}, {blue}].", {"reflectance": (red, green, blue)})
+        return Fix(
+            f"Scale it down: reflectance = [{red}, {green}, {blue}].",
+            {object_key(item, "surface", "reflectance"): (red, green, blue)},
+        )
     held = tuple((nm, round(value * scale, 4)) for nm, value in surface.spectrum or ())
-    return Fix(f"Scale the spectrum by {scale:.3g}.", {"spectrum": held})
+    return Fix(f"Scale the spectrum by {scale:.3g}.", {object_key(item, "surface", "spectrum"): held})

@@ -9,6 +9,7 @@ from itertools import pairwise
 
 from renderer.checks.facts import Facts
 from renderer.checks.findings import IMPLAUSIBLE, IMPOSSIBLE, Finding, Fix, Value
+from renderer.checks.keys import material_key
 from renderer.checks.view import FrameView
 from renderer.optics.library import LibraryEntry, known_names
 from renderer.shot.model import Material
@@ -55,13 +56,6 @@ def stated_materials(view: FrameView) -> Iterator[Material]:
             yield material
 
 
-def key_of(material: Material, *rest: str) -> str:
-    """The dotted key of a material of the shot file, quoted where the name asks for it."""
-    bare = re.fullmatch(r"[A-Za-z0-9_-]+", material.name)
-    name = material.name if bare else '"' + material.name.replace("\\", "\\\\").replace('"', '\\"') + '"'
-    return ".".join(("materials", name, *rest))
-
-
 def check_index(view: FrameView, facts: Facts) -> Iterator[Finding]:
     """Findings for refractive indices that no clear substance, or not the named one, has."""
     for material in stated_materials(view):
@@ -97,7 +91,7 @@ def _below_air(material: Material, nd: float) -> Finding:
         Fix(
             f"Use {inverse} for the substance itself; for a bubble, give an object the material air and a higher "
             "overlap_priority than what surrounds it.",
-            {key_of(material, "refractive_index"): {"constant": inverse}},
+            {material_key(material.name, "refractive_index"): {"constant": inverse}},
         ),
         1.0 - nd,
     )  # fmt: skip
@@ -105,7 +99,7 @@ def _below_air(material: Material, nd: float) -> Finding:
 
 def _not_as_named(material: Material, entry: LibraryEntry, nd: float) -> Finding:
     low, high = entry.nd_range
-    values: dict[str, Value] = {key_of(material, "refractive_index"): {"abbe": _typical(entry)}}
+    values: dict[str, Value] = {material_key(material.name, "refractive_index"): {"abbe": _typical(entry)}}
     return _finding(
         "material.index", f"Not the index of {entry.name}", IMPLAUSIBLE, material, round(nd, 5), (low, high),
         "index at the d line, relative to air",
@@ -137,7 +131,7 @@ def _unknown_index(material: Material, nd: float) -> Finding:
         "index at the d line, relative to air", why, SOURCE_RANGE,
         Fix(
             f"Use an index within {THINNEST} and {DENSEST}; antisolar materials lists those of real substances.",
-            {key_of(material, "refractive_index"): {"constant": nearest}},
+            {material_key(material.name, "refractive_index"): {"constant": nearest}},
         ),
         abs(nd - nearest),
     )  # fmt: skip
@@ -179,7 +173,7 @@ def _dispersion_fix(material: Material, nd: float, entry: LibraryEntry | None, l
     other = f', or leave the index out and say like = "{entry.name}"' if entry else ""
     return Fix(
         f"Give index and Abbe number: refractive_index = {{ abbe = [{pair[0]}, {pair[1]}] }}{other}.",
-        {key_of(material, "refractive_index"): {"abbe": pair}},
+        {material_key(material.name, "refractive_index"): {"abbe": pair}},
     )
 
 

@@ -14,21 +14,24 @@ def merge_frames(by_frame: Sequence[tuple[int, Sequence[Finding]]]) -> list[Find
     Two findings are the same when rule, subject, severity, title and sign-off agree and their frames follow each other
     in the list that was checked. The worst frame's measurement and fix are kept.
     """
-    done: list[Finding] = []
-    running: dict[tuple[object, ...], Finding] = {}
+    runs: list[list[Finding]] = []
+    running: dict[tuple[object, ...], list[Finding]] = {}
     for frame, findings in by_frame:
-        still: dict[tuple[object, ...], Finding] = {}
+        still: dict[tuple[object, ...], list[Finding]] = {}
         for finding in findings:
             key = _key(finding, still)
-            before = running.pop(key, None)
-            still[key] = _join(before, replace(finding, frames=(frame,), worst_frame=frame))
-        done.extend(running.values())
+            run = running.get(key)
+            if run is None:
+                run = []
+                runs.append(run)
+            run.append(replace(finding, frames=(frame,)))
+            still[key] = run
         running = still
-    done.extend(running.values())
-    return sorted(done, key=lambda finding: (finding.frames[0], finding.rule, finding.subject))
+    merged = [_join(run) for run in runs]
+    return sorted(merged, key=lambda finding: (finding.frames[0], finding.rule, finding.subject))
 
 
-def _key(finding: Finding, taken: dict[tuple[object, ...], Finding]) -> tuple[object, ...]:
+def _key(finding: Finding, taken: dict[tuple[object, ...], list[Finding]]) -> tuple[object, ...]:
     """What makes findings of two frames the same; a counter keeps apart two such findings of one frame."""
     base = (finding.rule, finding.subject, finding.severity, finding.title, finding.signed_off)
     count = 0
@@ -37,12 +40,12 @@ def _key(finding: Finding, taken: dict[tuple[object, ...], Finding]) -> tuple[ob
     return (*base, count)
 
 
-def _join(before: Finding | None, new: Finding) -> Finding:
-    """`before` grown by the frames of `new`; the worse of the two is the one shown."""
-    if before is None:
-        return new
-    worse = new if new.excess > before.excess else before
-    return replace(worse, frames=before.frames + new.frames)
+def _join(run: Sequence[Finding]) -> Finding:
+    """The findings of a stretch as one: the worst, named as such unless it is the same in every frame."""
+    worst = max(run, key=lambda finding: finding.excess)  # the first of equals
+    alike = all(finding.excess == worst.excess for finding in run)
+    frame = worst.worst_frame if worst.worst_frame is not None or alike else worst.frames[0]
+    return replace(worst, frames=tuple(finding.frames[0] for finding in run), worst_frame=frame)
 
 
 def frame_range(frames: Sequence[int]) -> str:

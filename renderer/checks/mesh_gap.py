@@ -11,6 +11,7 @@ import numpy.typing as npt
 from renderer.checks.facts import Facts
 from renderer.checks.findings import IMPLAUSIBLE, Finding, Fix
 from renderer.checks.gap_measure import Fit
+from renderer.checks.keys import object_key
 from renderer.checks.view import FrameView
 from renderer.shot.model import Object
 
@@ -78,7 +79,10 @@ def _film(vessel: Object, filling: Object, fit: Fit) -> Finding:
         fix=Fix(
             f"Grow {filling.name} by {grow_m} m along its normals, so that it reaches into {vessel.name}, and give "
             f"{vessel.name} the higher overlap_priority.",
-            {"grow_by_m": grow_m, "overlap_priority": max(vessel.priority, filling.priority + 1)},
+            {
+                "grow_by_m": grow_m,
+                object_key(vessel, "overlap_priority"): max(vessel.priority, filling.priority + 1),
+            },
         ),
         excess=fit.film_share,
     )
@@ -96,7 +100,7 @@ def _cuts_in(vessel: Object, filling: Object, fit: Fit) -> Finding:
         unit=f"overlap_priority of {vessel.name}, with {100.0 * fit.inside_share:.0f} % of the filling inside its wall",
         why="Where the two overlap the filling wins, so the wall is thinner than it was modelled.",
         source=SOURCE_OVERLAP,
-        fix=Fix(f"Give {vessel.name} overlap_priority = {higher}.", {"overlap_priority": higher}),
+        fix=Fix(f"Give {vessel.name} overlap_priority = {higher}.", {object_key(vessel, "overlap_priority"): higher}),
         excess=fit.inside_share,
     )
 

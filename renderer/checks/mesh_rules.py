@@ -6,6 +6,7 @@ from collections.abc import Iterator
 
 from renderer.checks.facts import Facts
 from renderer.checks.findings import ADVICE, IMPLAUSIBLE, IMPOSSIBLE, Finding, Fix, Value
+from renderer.checks.keys import object_key
 from renderer.checks.view import FrameView
 from renderer.shot.model import Object
 
@@ -79,7 +80,7 @@ def check_normals(view: FrameView, facts: Facts) -> Iterator[Finding]:
             yield _normals_finding(
                 item, IMPLAUSIBLE, "Stored normals against their faces", report.n_normals_against, "corners of faces",
                 "The normals for smooth shading point to the other side of the faces that they belong to.",
-                Fix("Recalculate the normals, or shade the object flat with smooth = false.", {"smooth": False}),
+                Fix("Recalculate the normals, or shade it flat: smooth = false.", {object_key(item, "smooth"): False}),
             )  # fmt: skip
 
 

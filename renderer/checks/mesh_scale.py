@@ -15,6 +15,7 @@ import numpy as np
 
 from renderer.checks.facts import Facts
 from renderer.checks.findings import IMPLAUSIBLE, Finding, Fix
+from renderer.checks.keys import object_key
 from renderer.checks.view import FrameView
 from renderer.geometry.parts import moved
 from renderer.shot.model import Object
@@ -126,7 +127,7 @@ def _unit_fix(item: Object, sizes: Sizes, size_m: float) -> Fix:
         _, name, new_m, factor = min(fits)
         return Fix(
             f"The mesh may be in another unit: in {name} it measures {new_m:.3g} m, that is a scale of {factor:.4g}.",
-            {"length_unit": name, "scale_by": float(f"{factor:.10g}")},
+            {object_key(item, "mesh_unit"): name, "scale_by": float(f"{factor:.10g}")},
         )
     factor = (0.9 * sizes.high_m if size_m > sizes.high_m else 1.1 * sizes.low_m) / size_m
     return Fix(f"Scale it by {factor:.3g} or so.", {"scale_by": float(f"{factor:.3g}")})

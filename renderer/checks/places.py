@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from renderer.checks import sphere
 from renderer.checks.findings import Value
+from renderer.checks.keys import bow_key
 from renderer.checks.view import FrameView
 from renderer.shot.model import Vector
 
@@ -16,16 +17,15 @@ def sun_values(view: FrameView, direction: Vector) -> dict[str, Value]:
     }
 
 
-def place_words(view: FrameView, direction: Vector) -> tuple[str, dict[str, Value]]:
-    """A direction in words (elevation, azimuth, and its pixel or where that lies), and as values for a machine."""
+def centre_words(view: FrameView, bow: str, direction: Vector) -> tuple[str, dict[str, Value]]:
+    """Where a bow's centre belongs, in words (elevation, azimuth, and its pixel), and as values for a machine."""
     elevation = sphere.elevation_deg(direction, view.axes)
     azimuth = sphere.azimuth_deg(direction, view.axes)
     pixel = view.pixel(direction)
     words = f"elevation {elevation:.2f}°, azimuth {azimuth:.2f}° ({pixel_words(view, pixel)})"
     values: dict[str, Value] = {
+        bow_key(bow, "centre"): {"azimuth": round(azimuth, 3) % 360.0, "elevation": round(elevation, 3)},
         "centre_direction": tuple(round(part, 6) for part in direction),
-        "centre_elevation": round(elevation, 3),
-        "centre_azimuth": round(azimuth, 3),
         "centre_pixel": None if pixel is None else (round(pixel[0], 1), round(pixel[1], 1)),
     }
     return words, values

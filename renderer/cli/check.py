@@ -26,9 +26,7 @@ STYLES = {"impossible": "red", "implausible": "yellow", "advice": "cyan", "quiet
 @click.option(
     "--fail-on",
     type=click.Choice(["impossible", "implausible", "advice"]),
-    default="implausible",
-    show_default=True,
-    help="The mildest finding that makes the command exit with 1.",
+    help="The mildest finding that makes the command exit with 1; the shot's own line, else implausible.",
 )
 @click.option("--json", "json_file", metavar="FILE|-", help="Write the report as JSON; - for standard output.")
 @click.option("--report", "report_file", metavar="FILE", type=FILE, help="Write the report as one HTML page.")
@@ -47,7 +45,7 @@ def check(
     variant: str | None,
     overrides: tuple[str, ...],
     roots: tuple[Path, ...],
-    fail_on: str,
+    fail_on: str | None,
     json_file: str | None,
     report_file: Path | None,
     overlay_file: Path | None,
@@ -60,6 +58,7 @@ def check(
     Nothing is rendered. The report also says where the bows of the shot's sun would stand in the frame. Exits with 0
     when nothing is flagged, 1 when something is; advice and signed-off findings do not count.
     """
+    from renderer.checks.findings import IMPLAUSIBLE
     from renderer.checks.run import check_shot
 
     talk = talk_of(quiet, log)
@@ -70,6 +69,7 @@ def check(
     )
     shots = [loaded.at(number) for number in numbers]
     report = check_shot(shots)
+    fail_on = fail_on or shots[0].fail_on or IMPLAUSIBLE
     _write_results(report, shots[0], fail_on, json_file, report_file, overlay_file, picture)
     for kind, path in (("report", report_file), ("overlay", overlay_file)):
         if path is not None:

@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from typing import Any
 
 from renderer import __version__
 from renderer.checks.expected import Crossing, ExpectedBow, FrameBows
-from renderer.checks.findings import SEVERITIES, Finding
+from renderer.checks.findings import SEVERITIES, Finding, Fix
 from renderer.checks.merging import frame_range
 from renderer.checks.run import CheckReport
 
@@ -58,13 +58,21 @@ def finding_data(finding: Finding) -> dict[str, Any]:
         "unit": finding.unit,
         "why": finding.why,
         "source": finding.source,
-        "fix": None if finding.fix is None else {"text": finding.fix.text, "values": _plain(finding.fix.values)},
+        "fix": None if finding.fix is None else fix_data(finding.fix),
         "signed_off": finding.signed_off,
     }
 
 
-def _plain(values: Any) -> dict[str, Any]:
-    return {key: list(value) if isinstance(value, tuple) else value for key, value in values.items()}
+def fix_data(fix: Fix) -> dict[str, Any]:
+    """A fix as plain data."""
+    return {"text": fix.text, "values": _plain(fix.values), "instead": _plain(fix.instead)}
+
+
+def _plain(value: Any) -> Any:
+    """Tuples as lists, all the way down."""
+    if isinstance(value, Mapping):
+        return {key: _plain(entry) for key, entry in value.items()}
+    return [_plain(entry) for entry in value] if isinstance(value, tuple) else value
 
 
 def _frame_data(bows: FrameBows) -> dict[str, Any]:

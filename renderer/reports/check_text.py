@@ -22,7 +22,7 @@ def plain(text: str, kind: str) -> str:
 def check_text(data: dict[str, Any], paint: Paint = plain) -> str:
     """The report of `check_data` as lines of text, ending in the verdict."""
     variant = f", variant {data['variant']}" if data["variant"] else ""
-    lines = [paint(f"{data['title'] or data['shot']}{variant}, frames {data['frames']}", "title"), ""]
+    lines = [paint(f"{data['title'] or data['shot']}{variant}, {wording.frames(data['frames'])}", "title"), ""]
     for finding in data["findings"]:
         lines += [*_finding_lines(finding, paint), ""]
     lines += [*_bow_lines(data), ""]

@@ -33,14 +33,18 @@ def measure(finding: dict[str, Any]) -> str:
     return ", ".join(parts) + unit
 
 
+def frames(text: str) -> str:
+    """``frames 1001-1048`` or ``frame 1001``."""
+    return f"frame{'s' if '-' in text or ',' in text else ''} {text}"
+
+
 def frames_words(finding: dict[str, Any]) -> str:
     """``frames 1001-1048, worst 1020``."""
-    frames, worst = finding["frames"], finding["worst_frame"]
-    if not frames:
+    text, worst = finding["frames"], finding["worst_frame"]
+    if not text:
         return ""
-    several = "-" in frames or "," in frames
-    words = f"frame{'s' if several else ''} {frames}"
-    return f"{words}, worst {worst}" if several and worst is not None else words
+    words = frames(text)
+    return f"{words}, worst {worst}" if words.startswith("frames") and worst is not None else words
 
 
 def pixel(place: list[float] | None, in_frame: bool = True) -> str:
@@ -99,6 +103,8 @@ def override_words(values: dict[str, Any]) -> list[str]:
 def _typed(value: Any) -> str:
     if isinstance(value, bool):
         return str(value).lower()
-    if isinstance(value, (list, tuple)):
+    if isinstance(value, dict):
+        return "{ " + ", ".join(f"{key} = {_typed(item)}" for key, item in value.items()) + " }"
+    if isinstance(value, list):
         return "[" + ", ".join(_typed(item) for item in value) + "]"
     return number(value)

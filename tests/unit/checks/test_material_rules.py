@@ -9,9 +9,10 @@ import pytest
 
 from renderer.checks.facts import Facts
 from renderer.checks.findings import ADVICE, IMPLAUSIBLE, IMPOSSIBLE, Finding
+from renderer.checks.keys import material_key
 from renderer.checks.light_left_out import check_left_out
 from renderer.checks.material_gain import check_gain
-from renderer.checks.material_rules import check_dispersion, check_index, key_of, known_abbe_range, named_entry
+from renderer.checks.material_rules import check_dispersion, check_index, known_abbe_range, named_entry
 from renderer.checks.view import FrameView
 from renderer.optics.library import library
 from renderer.shot.model import Dispersion, Material
@@ -30,7 +31,7 @@ def stated(name: str, model: str, *values: object) -> Material:
 
 def mended(material: Material, finding: Finding) -> Material:
     """The material with the index that the fix states."""
-    ((model, value),) = finding.fix.values[key_of(material, "refractive_index")].items()
+    ((model, value),) = finding.fix.values[material_key(material.name, "refractive_index")].items()
     return replace(material, dispersion=Dispersion(model, value if isinstance(value, tuple) else (value,)))
 
 
@@ -76,7 +77,8 @@ def test_library_materials_are_right_by_their_own_rules() -> None:
     ("nd", "vd", "severity"),
     [
         (1.52, 58.0, None), (1.52, 25.7, IMPLAUSIBLE), (1.52, 26.0, None), (1.52, 95.0, IMPLAUSIBLE),
-        (1.333, 55.8, None), (1.333, 20.0, IMPLAUSIBLE), (2.417, 55.3, None), (2.417, 80.0, IMPLAUSIBLE), (1.805, 25.4, None),
+        (1.333, 55.8, None), (1.333, 20.0, IMPLAUSIBLE), (2.417, 55.3, None), (2.417, 80.0, IMPLAUSIBLE),
+        (1.805, 25.4, None),
     ],
 )  # fmt: skip
 def test_abbe_number_against_known_substances(nd: float, vd: float, severity: str | None) -> None:
@@ -112,8 +114,8 @@ def test_one_wavelength_alone_has_no_dispersion_to_be_wrong() -> None:
 
 
 def test_the_key_of_a_material_with_spaces_is_quoted() -> None:
-    assert key_of(build.glass("old glass"), "absorption") == 'materials."old glass".absorption'
-    assert key_of(build.glass("bottle"), "absorption") == "materials.bottle.absorption"
+    assert material_key("old glass", "absorption") == 'materials."old glass".absorption'
+    assert material_key("bottle", "absorption") == "materials.bottle.absorption"
 
 
 @pytest.mark.parametrize(
@@ -142,7 +144,7 @@ def test_reflectance_over_one(reflectance: tuple[float, float, float], severity:
     found = list(check_gain(FrameView(build.frame(objects=(item,))), None))
     assert [finding.severity for finding in found] == ([severity] if severity else [])
     for finding in found:
-        item = build.shape_object(surface=build.paint(finding.fix.values["reflectance"]))
+        item = build.shape_object(surface=build.paint(finding.fix.values["objects.block.surface.reflectance"]))
         assert list(check_gain(FrameView(build.frame(objects=(item,))), None)) == []
 
 
@@ -150,7 +152,7 @@ def test_a_spectrum_over_one_names_its_wavelength() -> None:
     surface = replace(build.paint(), reflectance=None, spectrum=((400.0, 0.5), (600.0, 1.2)))
     (found,) = check_gain(FrameView(build.frame(objects=(build.shape_object(surface=surface),))), None)
     assert "600 nm" in found.unit
-    assert max(value for _, value in found.fix.values["spectrum"]) < 1.0
+    assert max(value for _, value in found.fix.values["objects.block.surface.spectrum"]) < 1.0
 
 
 @pytest.mark.parametrize(

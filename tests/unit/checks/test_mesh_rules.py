@@ -98,7 +98,7 @@ def test_stored_normals_that_point_in_are_found_for_smooth_objects_alone(tmp_pat
     assert ask(check_normals, item) == []
     (found,) = ask(check_normals, replace(item, smooth=True))
     assert (found.severity, found.measured) == (IMPLAUSIBLE, 3 * len(mesh.faces))
-    assert ask(check_normals, replace(item, smooth=found.fix.values["smooth"])) == []
+    assert ask(check_normals, replace(item, smooth=found.fix.values["objects.block.smooth"])) == []
 
 
 def test_faces_without_area_are_advice_and_doubled_faces_are_not(tmp_path: Path) -> None:
@@ -135,7 +135,7 @@ def test_a_mesh_in_millimetres_is_recognised(tmp_path: Path) -> None:
     item = build.mesh_object(box_file(tmp_path, (80.0, 120.0, 80.0)), "tumbler")
     (found,) = ask(check_scale, item)
     assert found.measured == 120.0
-    assert found.fix.values["length_unit"] == "mm"
+    assert found.fix.values["objects.tumbler.mesh_unit"] == "mm"
     mended = replace(item, metres_per_unit=item.metres_per_unit * found.fix.values["scale_by"])
     assert longest_side_m(mended, Facts()) == pytest.approx(0.12)
     assert ask(check_scale, mended) == []
@@ -173,14 +173,14 @@ def test_a_film_of_air_is_found(inset: float, flagged: bool) -> None:
         assert found[0].measured == pytest.approx(inset, rel=0.02)
         assert 0.0 < inset < found[0].fix.values["grow_by_m"]
         mended = filling(inset - found[0].fix.values["grow_by_m"])
-        assert ask(check_gap, tank(priority=found[0].fix.values["overlap_priority"]), mended) == []
+        assert ask(check_gap, tank(priority=found[0].fix.values["objects.tank.overlap_priority"]), mended) == []
 
 
 def test_a_filling_that_wins_over_its_glass_is_found() -> None:
     assert ask(check_gap, tank(priority=1), filling(-0.004)) == []
     (found,) = ask(check_gap, tank(), filling(-0.004))  # of two equal priorities the later object wins
     assert found.title == "Filling cuts into its glass"
-    assert ask(check_gap, tank(priority=found.fix.values["overlap_priority"]), filling(-0.004)) == []
+    assert ask(check_gap, tank(priority=found.fix.values["objects.tank.overlap_priority"]), filling(-0.004)) == []
 
 
 def test_the_built_in_filling_fits_the_built_in_tank() -> None:

@@ -61,7 +61,7 @@ def test_neighbouring_frames_merge_and_keep_the_worst() -> None:
     rows = [(1001, [finding(excess=1.0)]), (1002, [finding(excess=3.0)]), (1003, []), (1004, [finding(excess=2.0)])]
     first, second = merge_frames(rows)
     assert (first.frames, first.worst_frame, first.measured) == ((1001, 1002), 1002, 3.0)
-    assert (second.frames, second.worst_frame) == ((1004,), 1004)
+    assert (second.frames, second.worst_frame) == ((1004,), None)
 
 
 def test_different_bows_and_severities_do_not_merge() -> None:
