@@ -3,15 +3,18 @@
 from __future__ import annotations
 
 import hashlib
+import json
 import os
 import re
 from collections.abc import Sequence
 from pathlib import Path
+from urllib.parse import unquote
 
 from renderer.base.errors import nearest_name
 from renderer.shot.schema.flaws import KEY, Flaw
 
 _MARKS = re.compile(r"#+")
+LARGEST_GLTF = 64 * 1024 * 1024  # bytes of JSON
 MOST_NEIGHBOURS = 10_000  # files of a folder that are looked at for a nearest name
 
 
@@ -72,7 +75,11 @@ class Files:
         )
 
     def content(self, path: Path) -> str:
-        """SHA-256 of a file's content, in hexadecimal."""
+        """SHA-256 of a file's content, and of the buffers beside it where it is a .gltf, in hexadecimal."""
+        hashes = [self._hash(file) for file in (path, *buffers_beside(path))]
+        return hashes[0] if len(hashes) == 1 else hashlib.sha256(" ".join(hashes).encode("ascii")).hexdigest()
+
+    def _hash(self, path: Path) -> str:
         real = os.path.realpath(path)
         state = os.stat(real)
         key = (real, state.st_mtime_ns, state.st_size)
@@ -80,6 +87,23 @@ class Files:
             with open(real, "rb") as file:
                 self._hashes[key] = hashlib.file_digest(file, "sha256").hexdigest()
         return self._hashes[key]
+
+
+def buffers_beside(path: Path) -> list[Path]:
+    """The files, beside a .gltf or below its folder, that hold its buffers; none for any other file.
+
+    What is broken about them is told by whoever reads the mesh.
+    """
+    if path.suffix.lower() != ".gltf" or path.stat().st_size > LARGEST_GLTF:
+        return []
+    try:
+        buffers = json.loads(path.read_bytes().decode("utf-8"))["buffers"]
+        names = [str(buffer["uri"]) for buffer in buffers if not str(buffer.get("uri", "data:")).startswith("data:")]
+    except (ValueError, LookupError, TypeError, AttributeError, RecursionError):
+        return []
+    base = os.path.realpath(path.parent)
+    files = [Path(os.path.realpath(path.parent / unquote(name))) for name in names if "\0" not in name]
+    return [file for file in files if _within(str(file), base) and file.is_file()]
 
 
 def _within(path: str, base: str) -> bool:
@@ -93,4 +117,4 @@ def _near(path: Path) -> str:
             names = [item.name for _, item in zip(range(MOST_NEIGHBOURS), items, strict=False)]
     except OSError:
         return ""
-    return nearest_name(path.name, names)
+    return nearest_name(path.name, [name for name in names if name != path.name])

@@ -202,10 +202,8 @@ def _row(rows: list[Any], path: Path, part: str | int) -> int:
     if isinstance(part, int):
         if part < len(rows):
             return part
-        count = f"it has {len(rows)}, from [0]" if rows else "it is empty"
-        raise Flawed(
-            Flaw((*path, part), f"there is no `{{key}}`: {count}", f"a number below {len(rows)}" if rows else "")
-        )
+        what = f"`{path[-1]}` has no [{part}]" if rows else f"`{path[-1]}` is empty, so there is no [{part}]"
+        raise Flawed(Flaw(path, what, f"from [0] to [{len(rows) - 1}]" if rows else ""))
     names = [row.get("name") for row in rows if isinstance(row, dict)]
     known = [name for name in names if isinstance(name, str)]
     for index, row in enumerate(rows):

@@ -66,8 +66,12 @@ def parse(text: str, where: str) -> dict[str, Any]:
         line, column = _place(str(error), text)
         fault = Fault(_reworded(str(error)), f"{where}:{line}:{column}", _hint(str(error)))
         raise InputError(fault) from None
-    except (ValueError, RecursionError):  # a whole number of thousands of digits; nesting that got past the limit
-        raise InputError(Fault("the shot file holds a number or a nesting beyond reason", where)) from None
+    except (ValueError, RecursionError):  # a whole number of thousands of digits
+        digits = re.search(r"[0-9_]{1000,}", text)
+        line = text.count("\n", 0, digits.start()) + 1 if digits else 1
+        raise InputError(
+            Fault("a number has thousands of digits", f"{where}:{line}", "numbers of bearable length")
+        ) from None
 
 
 def check_depth(text: str, where: str) -> None:

@@ -17,6 +17,11 @@ EASE = "ease"
 _FRAME = re.compile(r"-?\d{1,8}", re.ASCII)
 
 
+def plain(value: float) -> str:
+    """A limit as a person writes it."""
+    return f"{value:,.0f}" if abs(value) >= 10_000 else f"{value:g}"
+
+
 @dataclass(frozen=True)
 class Bounds:
     """The range of a number: `low` and `high` are allowed themselves, `above` is not; `nonzero` refuses zero."""
@@ -39,13 +44,13 @@ class Bounds:
     def text(self) -> str:
         """The range in words, empty where any finite number will do."""
         if self.above is not None:
-            return f"above {self.above:g}" + (f", up to {self.high:g}" if self.high is not None else "")
+            return f"above {plain(self.above)}" + (f", up to {plain(self.high)}" if self.high is not None else "")
         if self.low is not None and self.high is not None:
-            return f"from {self.low:g} to {self.high:g}"
+            return f"from {plain(self.low)} to {plain(self.high)}"
         if self.low is not None:
-            return f"{self.low:g} or more"
+            return f"{plain(self.low)} or more"
         if self.high is not None:
-            return f"up to {self.high:g}"
+            return f"up to {plain(self.high)}"
         return "other than 0" if self.nonzero else ""
 
     def json(self) -> dict[str, Any]:
@@ -53,6 +58,13 @@ class Bounds:
         found = {"minimum": self.low, "maximum": self.high, "exclusiveMinimum": self.above}
         schema: dict[str, Any] = {key: value for key, value in found.items() if value is not None}
         return schema | ({"not": {"const": 0}} if self.nonzero else {})
+
+
+def in_unit(unit: str) -> str:
+    """A unit, to follow "a number" or the like; empty where there is none."""
+    if not unit:
+        return ""
+    return f", {unit}" if unit.startswith("per ") else f", in {unit}"
 
 
 def is_number(value: Any) -> bool:
@@ -81,8 +93,7 @@ class NumberLeaf(Leaf):
     def tail(self) -> str:
         """Range and unit, to follow "a number" or the like."""
         found = self.bounds.text()
-        unit = f", in {self.unit}" if self.unit else ""
-        return (f" {found}" if found else "") + unit
+        return (f" {found}" if found else "") + in_unit(self.unit)
 
     def read(self, value: Any) -> Any:
         if self.keyed and isinstance(value, dict):
@@ -256,7 +267,7 @@ class Whole(Leaf):
         return self.unit_text
 
     def expects(self) -> str:
-        return f"a whole number from {self.low} to {self.high}" + (f", in {self.unit}" if self.unit else "")
+        return f"a whole number from {plain(self.low)} to {plain(self.high)}{in_unit(self.unit)}"
 
     def read(self, value: Any) -> int:
         if isinstance(value, int) and not isinstance(value, bool) and self.low <= value <= self.high:
@@ -282,9 +293,8 @@ class Wholes(Leaf):
         return self.unit_text
 
     def expects(self) -> str:
-        unit = f", in {self.unit}" if self.unit else ""
         single = ", or one for all of them" if self.single else ""
-        return f"{self.count} whole numbers from {self.low} to {self.high}{unit}{single}"
+        return f"{self.count} whole numbers from {plain(self.low)} to {plain(self.high)}{in_unit(self.unit)}{single}"
 
     def read(self, value: Any) -> tuple[int, ...]:
         whole = Whole(self.low, self.high)
@@ -315,7 +325,7 @@ LOWEST_NM, HIGHEST_NM = 200.0, 3000.0  # of a table that the shot gives; what is
 
 @dataclass(frozen=True)
 class Pairs(Leaf):
-    """A table by wavelength, ``[[nm, value], ...]``, wavelengths rising; never keyed."""
+    """A table by wavelength, ``[[nm, value], ...]``, never keyed; wavelengths rise, or with `any_order` are made to."""
 
     of: str
     bounds: Bounds = Bounds()
@@ -324,14 +334,15 @@ class Pairs(Leaf):
     most: int = 10_000
     lowest_nm: float = LOWEST_NM
     highest_nm: float = HIGHEST_NM
+    any_order: bool = False
 
     @property
     def unit(self) -> str:
-        return f"nm and {self.unit_text}" if self.unit_text else "nm"
+        return f"nm, {self.unit_text}" if self.unit_text else "nm"
 
     def expects(self) -> str:
         tail = NumberLeaf(self.unit_text, self.bounds).tail()
-        rising = f"wavelengths rising from {self.lowest_nm:g} to {self.highest_nm:g} nm"
+        rising = f"wavelengths {'' if self.any_order else 'rising '}from {self.lowest_nm:g} to {self.highest_nm:g} nm"
         return f"pairs [[nm, {self.of}], ...], {rising}, {self.of}{tail}"
 
     def read(self, value: Any) -> tuple[tuple[float, float], ...]:
@@ -343,15 +354,21 @@ class Pairs(Leaf):
             )
         flaws: list[Flaw] = []
         pairs = [self._pair(entry, index, flaws) for index, entry in enumerate(value)]
-        if not flaws:
-            flaws = [
-                Flaw((i,), f"`{{key}}` is at {pairs[i][0]:g} nm, after {pairs[i - 1][0]:g} nm", "wavelengths that rise")
-                for i in range(1, len(pairs))
-                if pairs[i][0] <= pairs[i - 1][0]
-            ]
+        flaws = flaws or self._order_flaws(pairs)
         if flaws:
             raise Flawed(*flaws)
-        return tuple(pairs)
+        return tuple(sorted(pairs))
+
+    def _order_flaws(self, pairs: list[tuple[float, float]]) -> list[Flaw]:
+        """Wavelengths that repeat, or that fall where they must rise."""
+        found = []
+        for i, (wavelength, _) in enumerate(pairs):
+            if self.any_order and any(wavelength == other for other, _ in pairs[:i]):
+                found.append(Flaw((i,), f"`{{key}}` is at {wavelength:g} nm again", "each wavelength once"))
+            if not self.any_order and i > 0 and wavelength <= pairs[i - 1][0]:
+                what = f"`{{key}}` is at {wavelength:g} nm, after {pairs[i - 1][0]:g} nm"
+                found.append(Flaw((i,), what, "wavelengths that rise"))
+        return found
 
     def _pair(self, entry: Any, index: int, flaws: list[Flaw]) -> tuple[float, float]:
         """One pair; (0, 0) with new flaws where it is none."""

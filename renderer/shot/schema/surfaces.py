@@ -69,7 +69,8 @@ class Emission(Table):
         None, "In place of colour: pairs of wavelength and relative power", "[[400, 0.2], [550, 1.0], [700, 0.8]]"
     )
     lines: Annotated[
-        tuple[tuple[float, float], ...], Pairs("share", Bounds(above=0, high=1), most=32, lowest_nm=380, highest_nm=780)
+        tuple[tuple[float, float], ...],
+        Pairs("share", Bounds(above=0, high=1), most=32, lowest_nm=380, highest_nm=780, any_order=True),
     ] = key(
         (), "Spectral lines: pairs of wavelength and share of the luminance", "[[589.0, 0.67], [589.6, 0.33]]", "none"
     )

@@ -29,9 +29,10 @@ class OneOf:
         met = [group for group in self.groups if given.intersection(group)]
         if len(met) > 1:
             first, second = (next(key for key in group if key in given) for group in met[:2])
-            yield Flaw((second,), f"`{first}` and `{second}` exclude each other", f"one of {self.text()}")
+            yield Flaw((second,), f"`{first}` and `{second}` exclude each other", f"only one of {self.text('and')}")
         if not met and self.needed:
-            yield Flaw((), f"{self.text('or')} is missing", f"one of {self.text()}")
+            names = self.text("or")
+            yield Flaw((), f"{names}{',' if ', or ' in names else ''} is missing", "exactly one of them")
 
     def json(self) -> dict[str, Any]:
         """The rule as JSON Schema."""
@@ -42,9 +43,12 @@ class OneOf:
         none = [] if self.needed else [{"not": {"anyOf": some}}]
         return {"oneOf": [*some, *none]}
 
-    def text(self, last: str = "or") -> str:
+    def text(self, last: str) -> str:
         """The alternatives in a sentence."""
-        return listed([" with ".join(f"`{key}`" for key in group) for group in self.groups], last)
+        words = [[f"`{key}`" for key in group] for group in self.groups]
+        names = [(" with " if len(group) == 2 else "/").join(group) for group in words]
+        plain = listed(names, last)
+        return plain if all(len(group) == 1 for group in words) else plain.replace(f" {last} ", f", {last} ")
 
     def excluded_by(self, key: str) -> set[str]:
         """The keys that cannot stand beside `key`."""
@@ -97,7 +101,7 @@ class Table(BaseModel):
         return iter(())
 
     def agree(self) -> Iterator[Flaw]:
-        """Rules between values; asked only where each value is right by itself."""
+        """Rules between values; asked only where each value is right by itself, even if `rules` found something."""
         return iter(())
 
     @classmethod
@@ -129,17 +133,19 @@ class Table(BaseModel):
         if not isinstance(table, dict):
             raise _custom([refusal(value, cls.NOUN)])
         known = cls.keys()
-        flaws = [cls._unknown(name, known) for name in table if name not in known]
+        strange = {name: cls._unknown(name, known) for name in table if name not in known}
         given = {name: entry for name, entry in table.items() if name in known}
-        for alternatives in cls.ONE_OF:
-            flaws += alternatives.flaws(set(given))
-        flaws += cls.rules(given)
+        meant = {flaw.nearest: table[name] for name, flaw in strange.items() if flaw.nearest} | given
+        later = any(name in cls.LATER for name in strange)
+        flaws = [*strange.values()]
+        for alternatives in cls.ONE_OF:  # what is meant, or comes later, is not said to be missing as well
+            flaws += (flaw for flaw in alternatives.flaws(set(meant)) if flaw.at or not later)
+        flaws += cls.rules(meant)
         try:
             model: Self = handler(given)
         except ValidationError as error:
-            raise _custom(flaws + _flaws_of(error, cls)) from None
-        if not flaws:
-            flaws += model.agree()
+            raise _custom(flaws + _flaws_of(error, cls, set(meant))) from None
+        flaws += model.agree()
         if flaws:
             raise _custom(flaws)
         return model
@@ -162,17 +168,15 @@ def _custom(flaws: list[Flaw]) -> PydanticCustomError:
     return PydanticCustomError("flaws", "see the flaws", {"flaws": tuple(flaws)})
 
 
-def _flaws_of(error: ValidationError, table: type[Table]) -> list[Flaw]:
-    """Every flaw that pydantic collected below `table`."""
+def _flaws_of(error: ValidationError, table: type[Table], meant: set[str]) -> list[Flaw]:
+    """Every flaw that pydantic collected below `table`; what is `meant` is not missing."""
     found: list[Flaw] = []
     for item in error.errors(include_url=False, include_input=True):
         at: Path = item["loc"]
         if item["type"] == "flaws":
             found += below(at, item["ctx"]["flaws"])
         elif item["type"] == "missing":
-            info = table.keys()[str(at[-1])]
-            leaf = leaf_of(info)
-            found.append(Flaw(at[:-1], f"`{at[-1]}` is missing", leaf.expects() if leaf else "a table"))
+            found += [] if at[-1] in meant else [_missing(str(at[-1]), table)]
         elif item["type"] in ("list_type", "dict_type"):
             expected = "a list of tables" if item["type"] == "list_type" else "a table of tables"
             found.append(refusal(item["input"], expected, at))
@@ -184,6 +188,14 @@ def _flaws_of(error: ValidationError, table: type[Table]) -> list[Flaw]:
         else:  # a kind of error that no table of ours can give: our own fault, not the user's
             raise error
     return found
+
+
+def _missing(name: str, table: type[Table]) -> Flaw:
+    """The flaw of a key that must be given."""
+    info = table.keys()[name]
+    leaf = leaf_of(info)
+    extra = info.json_schema_extra if isinstance(info.json_schema_extra, dict) else {}
+    return Flaw((), f"`{name}` is missing", leaf.expects() if leaf else f"a table, as in {name} = {extra['x-example']}")
 
 
 def find(errors: ValidationError) -> list[Flaw]:
