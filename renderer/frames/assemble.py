@@ -26,14 +26,14 @@ def assemble(shot: FrameShot) -> Scene:
     from renderer.colour.wavelengths import spectrum_for
     from renderer.ray_search.build import build_world
 
-    table, placing = Looks(), Placing()
+    table, placing = Looks(), Placing(shot.objects)
     camera = camera_arrays(shot.camera)
     objects = object_arrays(shot.objects, table)
     surfaces = surface_arrays(table)
-    for object_id, item in enumerate(shot.objects):
-        placing.add(object_id, item)
+    for object_id in range(len(shot.objects)):
+        placing.add(object_id)
     world = build_world(placing.assets, placing.placements, objects)
-    sun, sky = sun_arrays(shot.sun), sky_arrays(shot)
+    sun, sky = sun_arrays(shot.sun, shot.sky.kind, table.notes), sky_arrays(shot)
     spectrum = spectrum_for(lines_of(shot.objects), shot.settings.wavelengths_nm)
     return Scene(
         world=world,

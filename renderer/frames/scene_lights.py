@@ -57,7 +57,7 @@ def light_arrays(items: Sequence[Object], placing: Placing, world: World) -> Are
     return AreaLights(
         instance=pack(np.concatenate([np.zeros(0, np.int32), *instances]), np.int32),
         primitive=pack(primitive, np.int32),
-        light=pack(np.repeat(np.arange(len(powers)), [len(p) for p in powers]), np.int32),
+        light=pack([row for row, own in enumerate(powers) for _ in range(len(own))], np.int32),
         cdf=pack(draw_table(np.concatenate([np.zeros(0), *powers]))),
         of_primitive=pack(rows_of(primitive, placing.count()), np.int32),
         radiance=pack([radiance for radiance, _ in spectra]),

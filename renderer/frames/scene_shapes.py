@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
-from dataclasses import dataclass, field
+from collections.abc import Sequence
+from dataclasses import dataclass, field, replace
+from pathlib import Path
 
 import numpy as np
 import numpy.typing as npt
@@ -11,8 +12,8 @@ import numpy.typing as npt
 from renderer.arrays.assets import Placement, SphereAsset, TriangleAsset
 from renderer.arrays.packing import pack
 from renderer.base.errors import Fault, InputError
-from renderer.geometry.mesh_files import load_parts
-from renderer.geometry.parts import composed, determinant, identity
+from renderer.geometry.mesh_files import is_named, load_parts
+from renderer.geometry.parts import Part, composed, determinant, identity
 from renderer.geometry.round_solids import sphere_mesh
 from renderer.geometry.shapes import build_shape
 from renderer.shot.model import Object
@@ -26,21 +27,51 @@ EVEN = 1e-9  # relative difference of a matrix's axes up to which a sphere stays
 BOX = np.array([[i, j, k] for i in (0, 1) for j in (0, 1) for k in (0, 1)])
 
 
+FileKey = tuple[Path, float, bool]
+
+
 @dataclass
 class Placing:
-    """Assets and where they stand, collected object by object."""
+    """Assets and where they stand, collected object by object. `items` are all objects of the shot."""
 
+    items: Sequence[Object]
     assets: list[Asset] = field(default_factory=list)
     placements: list[Placement] = field(default_factory=list)
-    known: dict[object, list[tuple[int, Floats]]] = field(default_factory=dict)
+    files: dict[FileKey, list[Part]] = field(default_factory=dict)
+    shapes: dict[object, list[Asset]] = field(default_factory=dict)
 
-    def add(self, object_id: int, item: Object) -> None:
-        """Place one object; its mesh is loaded, or its shape built, unless an earlier object has the same."""
-        key = asset_key(item)
-        if item.role == "light" or key not in self.known:  # a light's triangles are its own: they are listed by number
-            self.known[key] = [(self.number(asset), matrix) for asset, matrix in assets_of(item)]
-        for asset, matrix in self.known[key]:
-            self.placements.append(Placement(asset, object_id, pack(composed(item.matrices, matrix))))
+    def add(self, object_id: int) -> None:
+        """Place one object; its file is read, or its shape built, unless an earlier object has the same."""
+        item = self.items[object_id]
+        try:
+            check_matrices(item)
+            found = self.parts(item) if item.mesh is not None else self.shape(item)
+        except InputError as error:
+            raise InputError(*(named(fault, item.name) for fault in error.faults)) from error
+        for asset, matrix in found:
+            if item.role == "light" and isinstance(asset, TriangleAsset):
+                asset = replace(asset)  # triangles that shine are listed by number, so they are nobody else's
+            self.placements.append(Placement(self.number(asset), object_id, pack(composed(item.matrices, matrix))))
+
+    def parts(self, item: Object) -> list[tuple[Asset, Floats]]:
+        """The parts of a file that an object takes. All that any object takes of it is read at once."""
+        assert item.mesh is not None
+        key = file_key(item)
+        if key not in self.files:
+            taken = [other.mesh_nodes for other in self.items if other.mesh is not None and file_key(other) == key]
+            nodes = () if () in taken else tuple(sorted({name for names in taken for name in names}))
+            self.files[key] = load_parts(item.mesh, nodes, item.metres_per_unit, item.smooth)
+        return [(part.asset, part.matrix) for part in self.files[key] if is_named(part.names, item.mesh_nodes)]
+
+    def shape(self, item: Object) -> list[tuple[Asset, Floats]]:
+        """The meshes or spheres of a built-in shape."""
+        assert item.shape is not None
+        sizes = tuple(sorted(item.shape.sizes.items()))
+        key = (item.shape.kind, sizes, item.smooth, needs_mesh(item), item.role == "light")
+        if key not in self.shapes:
+            built = build_shape(item.shape).assets
+            self.shapes[key] = [shaded(meshed(asset, item), item.smooth) for asset in built]
+        return [(asset, identity()) for asset in self.shapes[key]]
 
     def count(self) -> int:
         """How many primitives there are: triangles and spheres, each once however often it is placed."""
@@ -55,28 +86,10 @@ class Placing:
         return len(self.assets) - 1
 
 
-def asset_key(item: Object) -> object:
-    """What decides an object's triangles, whatever its place."""
-    if item.mesh is not None:
-        return "mesh", item.mesh, item.mesh_nodes, item.metres_per_unit, item.smooth
-    assert item.shape is not None
-    sizes = tuple(sorted(item.shape.sizes.items()))
-    return "shape", item.shape.kind, sizes, item.smooth, item.role == "light", needs_mesh(item)
-
-
-def assets_of(item: Object) -> Iterator[tuple[Asset, Floats]]:
-    """The meshes and spheres of an object, each with the matrix that a file places it by."""
-    try:
-        check_matrices(item)
-        if item.mesh is not None:
-            for part in load_parts(item.mesh, item.mesh_nodes, item.metres_per_unit, item.smooth):
-                yield part.asset, part.matrix
-            return
-        assert item.shape is not None
-        for asset in build_shape(item.shape).assets:
-            yield shaded(meshed(asset, item), item.smooth), identity()
-    except InputError as error:
-        raise InputError(*(named(fault, item.name) for fault in error.faults)) from error
+def file_key(item: Object) -> FileKey:
+    """What decides the triangles that are read from a file."""
+    assert item.mesh is not None
+    return item.mesh, item.metres_per_unit, item.smooth
 
 
 def named(fault: Fault, name: str) -> Fault:

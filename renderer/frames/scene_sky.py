@@ -16,13 +16,17 @@ from renderer.shot.model import Axes, FrameShot, Sky, Sun
 
 Floats = npt.NDArray[np.float64]
 
+OVERCAST_SUN_DEG = 45.0  # height of the sun behind an overcast sky in a shot that has none; our choice
 EVEN_SHARE = 0.01  # of the chances, spread evenly over the sphere, so that no direction has none
 
 
-def sun_arrays(sun: Sun | None) -> lights.Sun:
-    """The sun's disc at its apparent place; numbers of 0 without a sun, or with all of it under the horizon."""
+def sun_arrays(sun: Sun | None, sky_kind: str, notes: list[str]) -> lights.Sun:
+    """The sun's disc at its apparent place; numbers of 0 without one, under the horizon, or behind an overcast sky."""
     from renderer.optics import sun as optics
 
+    if sun is not None and sky_kind == "overcast":
+        notes.append("the overcast sky hides the sun: it lights the clouds, and casts no shadows of its own")
+        sun = None
     if sun is None:
         return lights.Sun(pack(np.zeros(9)), pack(np.zeros(N_WAVELENGTHS)))
     radiance = optics.sun_radiance(sun.elevation_deg, sun.visibility_km)
@@ -66,13 +70,11 @@ def sky_map(shot: FrameShot) -> tuple[Floats, Floats]:
     if sky.kind == "picture":
         assert sky.picture is not None
         return picture_map(sky.picture, sky)
+    if sky.kind == "overcast":
+        return optics.overcast_sky(OVERCAST_SUN_DEG if sun is None else sun.elevation_deg)
     if sun is None:
-        raise InputError(
-            Fault(f"a {sky.kind} sky needs a sun", str(shot.source), "a [sun] table, or another kind of sky")
-        )
-    if sky.kind == "clear":
-        return optics.clear_sky(sun.elevation_deg, sun.azimuth_deg, sun.visibility_km)
-    return optics.overcast_sky(sun.elevation_deg)
+        raise InputError(Fault("a clear sky needs a sun", str(shot.source), "a [sun] table, or another kind of sky"))
+    return optics.clear_sky(sun.elevation_deg, sun.azimuth_deg, sun.visibility_km)
 
 
 def picture_map(path: Path, sky: Sky) -> tuple[Floats, Floats]:

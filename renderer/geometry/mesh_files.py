@@ -48,14 +48,8 @@ def read_parts(
 ) -> list[Part]:
     """The parts of a file; vertices without a place are not-a-number, unless they are to be refused."""
     entries = scene_of(path)
-    named = [entry for entry in entries if not nodes or not set(nodes).isdisjoint(entry[1])]
-    if not named:
-        known = {name for _, names, _ in entries for name in names}
-        missing = ", ".join(nodes)
-        expected = f"one of {', '.join(sorted(known)[:8])}" if known else "named nodes"
-        raise InputError(
-            Fault(f'the mesh file has no part named "{missing}"', str(path), expected, nearest_name(missing, known))
-        )
+    named = [entry for entry in entries if is_named(entry[1], nodes)]
+    check_names(path, nodes, {name for _, names, _ in entries for name in names})
     assets: dict[int, TriangleAsset] = {}
     parts = []
     for raw, names, matrix in named:
@@ -63,10 +57,24 @@ def read_parts(
             assets[id(raw)] = asset_from(path, raw, metres_per_unit, smooth, refuse_holes)
         matrix = matrix.copy()
         matrix[:, 3] *= metres_per_unit
-        parts.append(Part(names[0], assets[id(raw)], matrix))
+        parts.append(Part(names[0], assets[id(raw)], matrix, names))
     for raw, _, _ in named:
         raw.clear()
     return parts
+
+
+def is_named(names: tuple[str, ...], nodes: tuple[str, ...]) -> bool:
+    """Whether a part is asked for, by its own name or that of a node above it; no names ask for all."""
+    return not nodes or not set(nodes).isdisjoint(names)
+
+
+def check_names(path: Path, nodes: tuple[str, ...], known: set[str]) -> None:
+    """Refuse names that no part of a file has."""
+    for name in nodes:
+        if name not in known:
+            expected = "one of " + ", ".join(sorted(known)[:8])
+            what = f'the mesh file has no part named "{name}"'
+            raise InputError(Fault(what, str(path), expected, nearest_name(name, known)))
 
 
 def scene_of(path: Path) -> list[tuple[Raw, tuple[str, ...], Floats]]:
@@ -88,7 +96,9 @@ def scene_of(path: Path) -> list[tuple[Raw, tuple[str, ...], Floats]]:
         except MemoryError as error:
             raise refuse(path, "the mesh is too large for this machine's memory") from error
         except Exception as error:  # whatever the reader trips over, a person gets one sentence
-            raise refuse(path, f"the mesh cannot be read ({reason(error)})", f"a whole {kind[1:].upper()} file") from error
+            raise refuse(
+                path, f"the mesh cannot be read ({reason(error)})", f"a whole {kind[1:].upper()} file"
+            ) from error
     entries = list(placements(path, raw))
     if not entries:
         raise refuse(path, "the mesh has no faces", "at least one triangle")

@@ -15,12 +15,14 @@ from renderer.geometry.positions import Floats
 class Part:
     """One placed mesh of a file. `asset` is the same object for every placing of the same triangles.
 
-    `matrix` (3, 4) takes the asset's metres to the file's metres.
+    `matrix` (3, 4) takes the asset's metres to the file's metres. `names` are those it can be asked for by: its node's,
+    its mesh's, and those of the nodes above it.
     """
 
     name: str
     asset: TriangleAsset
     matrix: Floats
+    names: tuple[str, ...] = ()
 
 
 def identity() -> Floats:
