@@ -163,7 +163,7 @@ def chromaticity_miss(spectra: Floats, target: Floats) -> Floats:
 def chromaticity_uv(xyz: Floats) -> Floats:
     """CIE 1976 u', v' (..., 2) of XYZ (..., 3). CIE 015:2018, section 8.1."""
     x, y, z = np.moveaxis(np.asarray(xyz), -1, 0)
-    return np.stack([4.0 * x, 9.0 * y], axis=-1) / (x + 15.0 * y + 3.0 * z)[..., None]
+    return np.asarray(np.stack([4.0 * x, 9.0 * y], axis=-1) / (x + 15.0 * y + 3.0 * z)[..., None])
 
 
 def spectrum_of_table(pairs: Pairs) -> Floats:
@@ -178,7 +178,7 @@ def spectrum_of_table(pairs: Pairs) -> Floats:
         raise InputError(
             Fault("the spectrum of a light cannot be read", expected="(nm, value) in rising order, values 0 or more")
         )
-    values: Floats = np.interp(wavelengths_nm(), table[:, 0], table[:, 1], left=0.0, right=0.0)
+    values = np.asarray(np.interp(wavelengths_nm(), table[:, 0], table[:, 1], left=0.0, right=0.0), dtype=np.float64)
     if not luminance_of(values) > 0.0:
         raise InputError(
             Fault("the spectrum of a light has nothing visible in it", expected="values above 0 within 380 to 780 nm")

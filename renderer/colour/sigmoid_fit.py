@@ -15,15 +15,16 @@ from renderer.colour.tables import Floats
 
 LARGEST = 1e6  # of a coefficient; edges are then far sharper than the observer can tell
 CLOSE_ENOUGH = 1e-7  # squared CIELAB difference at which a colour is met
-STALLED = 1e-3  # share of the squared difference that a step must take off to count as progress
-MOST_STALLS = 3
+PROGRESS = 3e-4  # share of the squared difference that a step must take off, or it counts as stalled
+MOST_STALLS = 4
 MOST_STEPS = 120
 
 
-def fitted(targets: Floats, start: Floats, cells: Cells) -> tuple[Floats, Floats]:
+def fitted(targets: Floats, start: Floats, cells: Cells, progress: float = PROGRESS) -> tuple[Floats, Floats]:
     """Coefficients (3, n) whose colours come nearest to the XYZ `targets` (3, n), and squared CIELAB differences (n,).
 
-    `start` (3, n) are coefficients to start from.
+    `start` (3, n) are coefficients to start from; a colour whose last steps took less than the share `progress` off
+    its squared difference is as near as it gets.
     """
     wanted = lab_and_slopes(targets / cells.white[:, None])[0]
     coefficients = start.copy()
@@ -45,7 +46,7 @@ def fitted(targets: Floats, start: Floats, cells: Cells) -> tuple[Floats, Floats
         misses = np.where(better, new_misses, misses)
         slopes = np.where(better, new_slopes, slopes)
         damping = np.where(better, np.maximum(damping * 0.1, 1e-9), damping * 8.0)
-        stalls = np.where(better & (new < (1.0 - STALLED) * old), 0, stalls + better)
+        stalls = np.where(better & (new < (1.0 - progress) * old), 0, stalls + better)
         going = (errors[active] > CLOSE_ENOUGH) & (stalls < MOST_STALLS) & (damping < 1e8)
         active, damping, stalls = active[going], damping[going], stalls[going]
         misses, slopes = misses[:, going], slopes[:, :, going]

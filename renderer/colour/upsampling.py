@@ -22,7 +22,8 @@ Flags = npt.NDArray[np.bool_]
 
 BLOCK = 1 << 16  # colours that one thread solves at a time
 WIDE_NM, NARROW_NM = 10, 2  # cells for smooth and for steep reflectances
-STEEP = 50.0  # largest coefficient above which a reflectance is fitted again by narrow cells
+STEEP = 30.0  # largest coefficient above which a reflectance is fitted again by narrow cells
+FIRST_PROGRESS = 1e-2  # the first fit may end early where it creeps: what is steep is fitted again
 GREY_MARGIN = 1e-6  # greys reach from this reflectance to 1 minus it, where the sigmoid is still finite
 START_MARGIN = 0.01  # the fit starts from a grey this far from black and white, where the sigmoid still has a slope
 OUTSIDE_CIEDE2000 = 0.5  # a colour that its nearest reflectance misses by more is outside the object-colour solid
@@ -108,7 +109,7 @@ def solved_block(targets: Floats, space: str) -> tuple[Floats, Floats]:
     if n == 1:  # two columns at least, so that sums run over the cells in the same order as for many
         coefficients, errors = solved_block(np.repeat(targets, 2, axis=1), space)
         return coefficients[:, :1], errors[:1]
-    coefficients, errors = fitted(targets, flat(targets[1], START_MARGIN), cells_of(space, WIDE_NM))
+    coefficients, errors = fitted(targets, flat(targets[1], START_MARGIN), cells_of(space, WIDE_NM), FIRST_PROGRESS)
     steep = np.flatnonzero(np.abs(coefficients).max(axis=0) > STEEP)
     if steep.size:
         some = np.repeat(steep, 2) if steep.size == 1 else steep
