@@ -20,6 +20,7 @@ import numpy as np
 
 from renderer.base.errors import Fault, InputError
 from renderer.colour.tables import Floats
+from renderer.optics.exact_functions import LN2, exponential, logarithm
 
 MID_GREY = 0.18
 LENS_FACTOR = 0.65  # q of ISO 12232
@@ -50,22 +51,28 @@ def exposure_by_iso(iso: float, shutter_s: float, f_number: float) -> float:
 
 def exposure_by_stops(stops: float) -> float:
     """Factor from cd/m2 to picture values, so many stops brighter than a sunny day's exposure."""
-    return exposure_by_iso(ZERO_STOPS_ISO, ZERO_STOPS_TIME_S, ZERO_STOPS_F_NUMBER) * math.exp2(stops)
+    return exposure_by_iso(ZERO_STOPS_ISO, ZERO_STOPS_TIME_S, ZERO_STOPS_F_NUMBER) * doublings(stops)
+
+
+def doublings(stops: float) -> float:
+    """2^stops, the same on every machine, and exact for whole stops."""
+    whole = math.floor(stops)
+    return math.ldexp(float(exponential((stops - whole) * LN2)), whole)
 
 
 def exposure_auto(luminance: Floats) -> float:
     """Factor that brings a picture's geometric mean luminance to mid grey, in steps of a hundredth of a stop.
 
     E. Reinhard, M. Stark, P. Shirley, J. Ferwerda, "Photographic Tone Reproduction for Digital Images", Proc. SIGGRAPH
-    2002, equations 1 and 2 with a key of 0.18, over what is brighter than a millionth of the brightest. The steps keep
-    the factor the same where logarithms differ in the last bit. A black picture gets the exposure of 0 stops.
+    2002, equations 1 and 2 with a key of 0.18, over what is brighter than a millionth of the brightest.
+    A black picture gets the exposure of 0 stops.
     """
     values = np.asarray(luminance, dtype=np.float64).ravel()
     values = values[np.isfinite(values)]
     counted = values[values > DARKEST_COUNTED * values.max(initial=0.0)]
     if counted.size == 0:
         return exposure_by_stops(0.0)
-    wanted = math.log2(MID_GREY / exposure_by_stops(0.0)) - float(np.log2(counted).mean())
+    wanted = float(logarithm(MID_GREY / exposure_by_stops(0.0)) - logarithm(counted).mean()) / LN2
     return exposure_by_stops(round(wanted * 100.0) / 100.0)
 
 

@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-import math
 from functools import cache
 
 import numpy as np
 
 from renderer.base.errors import Fault, InputError
 from renderer.colour.tables import Floats, frozen, resampled, shipped_table, wavelengths_nm
+from renderer.optics.exact_functions import exponential
 
 PLANCK_J_S = 6.62607015e-34  # exact, SI 2019
 LIGHT_SPEED_M_PER_S = 299792458.0  # exact, SI
@@ -30,10 +30,9 @@ def d65() -> Floats:
 @cache
 def illuminant_a() -> Floats:
     """CIE standard illuminant A, (401,), 100 at 560 nm. ISO/CIE 11664-2:2022: Planck, 2848 K, c2 = 0.01435 m K."""
-    top = math.expm1(1.435e7 / (2848.0 * 560.0))
-    return frozen(
-        np.array([100.0 * (560.0 / nm) ** 5 * top / math.expm1(1.435e7 / (2848.0 * nm)) for nm in wavelengths_nm()])
-    )
+    nm = wavelengths_nm()
+    at_560_nm = exponential(1.435e7 / (2848.0 * 560.0)) - 1.0
+    return frozen(100.0 * fifth_power(560.0 / nm) * at_560_nm / (exponential(1.435e7 / (2848.0 * nm)) - 1.0))
 
 
 @cache
@@ -71,8 +70,15 @@ def blackbody(temperature_k: float) -> Floats:
     """Spectral radiance of a black body, (401,) [W m^-2 sr^-1 nm^-1], by Planck's law in a vacuum; 500 to 100,000 K."""
     require_range("a black body", temperature_k, PLANCK_LOW_K, PLANCK_HIGH_K)
     first = 2.0 * PLANCK_J_S * LIGHT_SPEED_M_PER_S**2 * 1e-9  # the last factor: a metre of wavelength to a nanometre
-    metres = [nm * 1e-9 for nm in wavelengths_nm()]
-    return np.array([first / (m**5 * math.expm1(SECOND_RADIATION_M_K / (m * temperature_k))) for m in metres])
+    metres = wavelengths_nm() * 1e-9
+    return np.asarray(
+        first / (fifth_power(metres) * (exponential(SECOND_RADIATION_M_K / (metres * temperature_k)) - 1.0))
+    )
+
+
+def fifth_power(x: Floats) -> Floats:
+    """x^5 by multiplication."""
+    return x * x * x * x * x
 
 
 def white_light(temperature_k: float) -> Floats:
