@@ -18,8 +18,8 @@ from renderer.frames.textures import load_texture
 from renderer.geometry.mesh_files import load_mesh
 from tests.unit.geometry.mesh_writing import CUBE_FACES, CUBE_POINTS, glb, gltf_header, obj, ply, stl
 
-PLY_HEAD = "ply\nformat ascii 1.0\nelement vertex {v}\nproperty float x\nproperty float y\nproperty float z\nelement face {f}\n"
-PLY_HEAD += "property list uchar int vertex_indices\nend_header\n"
+PLY_HEAD = "ply\nformat ascii 1.0\nelement vertex {v}\nproperty float x\nproperty float y\nproperty float z\n"
+PLY_HEAD += "element face {f}\nproperty list uchar int vertex_indices\nend_header\n"
 
 
 def text(name: str, content: str | bytes) -> Callable[[Path], Path]:
