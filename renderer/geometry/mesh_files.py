@@ -16,11 +16,13 @@ from renderer.geometry.gltf_header import open_gltf
 from renderer.geometry.mesh_headers import check_counts, check_ply, check_size, check_stl, obj_faces, refuse
 from renderer.geometry.normals import smooth_normals, unit_rows
 from renderer.geometry.parts import Part, composed, identity, placed
+from renderer.geometry.ply_polygons import read_polygons
 from renderer.geometry.positions import Floats, position_groups
 
 Raw = dict[str, Any]
 
 NUMBERS_END = "could not be read to its end"  # NumPy's words, as a warning or an error by version
+UNEVEN = "unexpected length"  # trimesh's words for a binary PLY whose faces are not all alike
 FARTHEST_M = 1e9  # beyond, squares of squares of distances leave few digits
 
 
@@ -118,8 +120,13 @@ def read_ply(path: Path) -> Raw:
     from trimesh.exchange.ply import load_ply
 
     check_ply(path, path.stat().st_size)
-    with path.open("rb") as stream:
-        raw: Raw = load_ply(stream, skip_materials=True)
+    try:
+        with path.open("rb") as stream:
+            raw: Raw = load_ply(stream, skip_materials=True)
+    except ValueError as error:
+        if UNEVEN not in str(error):
+            raise
+        return read_polygons(path)
     raw.pop("metadata", None)
     return raw
 
@@ -223,7 +230,7 @@ def asset_from(path: Path, raw: Raw, metres_per_unit: float, smooth: bool, refus
     faces = faces.astype(np.int32)
     vertices *= metres_per_unit
     whole = settle(path, vertices, faces, refuse_holes)
-    uvs = rows_or_none(getattr(raw.get("visual"), "uv", None), len(vertices), 2)
+    uvs = rows_or_none(getattr(raw.get("visual"), "uv", raw.get("uvs")), len(vertices), 2)
     normals = rows_or_none(raw.get("vertex_normals"), len(vertices), 3)
     if not smooth or not whole:
         normals = np.zeros((0, 3))

@@ -61,6 +61,38 @@ def test_text_formats_and_polygons(tmp_path):
     )
 
 
+def mixed_ply(path, order="<", cut=0):
+    """A cube of one quad and the rest triangles, with a number before and after each list."""
+    faces = [[0, 1, 3, 2], *CUBE_FACES[2:].tolist()]
+    name = "little" if order == "<" else "big"
+    head = f"ply\nformat binary_{name}_endian 1.0\nelement vertex 8\n"
+    head += "".join(f"property double {axis}\n" for axis in ("x", "y", "z", "nx", "ny", "nz", "u", "v"))
+    head += f"element face {len(faces)}\nproperty uchar flag\nproperty list uchar uint vertex_indices\n"
+    head += "property float weight\nend_header\n"
+    outward = (CUBE_POINTS - 0.5) / 0.75**0.5
+    rows = np.hstack([CUBE_POINTS, outward, CUBE_POINTS[:, :2]]).astype(order + "f8").tobytes()
+    body = b"".join(
+        b"\7" + bytes([len(f)]) + np.array(f, order + "u4").tobytes() + np.array([1.0], order + "f4").tobytes()
+        for f in faces
+    )
+    content = head.encode() + rows + body
+    path.write_bytes(content[: len(content) - cut])
+    return path
+
+
+@pytest.mark.parametrize("order", ["<", ">"])
+def test_binary_ply_with_triangles_and_quads(tmp_path, order):
+    asset = one(mixed_ply(tmp_path / "mixed.ply", order), smooth=True)
+    found = inspect_mesh(asset)
+    assert (found.watertight, found.outward, found.n_faces, found.n_normals_against) == (True, True, 12, 0)
+    assert np.array_equal(asset.uvs, CUBE_POINTS[:, :2])
+
+
+def test_binary_ply_of_polygons_cut_short(tmp_path):
+    with pytest.raises(InputError, match="cut short, or broken at face 10"):
+        one(mixed_ply(tmp_path / "mixed.ply", cut=3))
+
+
 def test_gltf_with_its_buffer_beside_it(tmp_path):
     header, blob = gltf_header(CUBE_POINTS, CUBE_FACES, [{"mesh": 0}])
     header["buffers"][0]["uri"] = "cube%20data.bin"

@@ -1,4 +1,4 @@
-"""Computed vertex normals: exact on spheres, creased at edges, one at seams; and vertices found to stand in one place."""
+"""Computed vertex normals: exact on spheres, creased at edges, one at seams; and which vertices share a place."""
 
 from __future__ import annotations
 
