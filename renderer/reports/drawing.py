@@ -68,10 +68,10 @@ class Canvas:
         large = tuple(round(part * self.OVER) for part in box)
         self._draw.rectangle(large, fill=FRAME_BACK)
         if path is not None:
-            with Image.open(path) as found:
-                fitted = found.convert("RGB").resize(
-                    (large[2] - large[0], large[3] - large[1]), Image.Resampling.BILINEAR
-                )
+            from renderer.pictures.reading import read_8_bit
+
+            size = (large[2] - large[0], large[3] - large[1])
+            fitted = Image.fromarray(read_8_bit(path)).resize(size, Image.Resampling.BILINEAR)
             self._large.paste(fitted, (large[0], large[1]))
 
     def frame(self, box: Box) -> None:

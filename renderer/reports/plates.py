@@ -5,7 +5,6 @@ from __future__ import annotations
 import io
 from pathlib import Path
 
-from renderer.base.errors import Fault, InputError
 from renderer.reports.html import Plate
 from renderer.shot.model import FrameShot
 
@@ -14,13 +13,11 @@ WIDEST = 1440  # pixels: what a report needs on a desk
 
 def picture_plate(path: Path, frame: int) -> Plate:
     """A rendered frame, made smaller where it is wider than a report shows."""
-    from PIL import Image, UnidentifiedImageError
+    from PIL import Image
 
-    try:
-        with Image.open(path) as found:
-            picture = found.convert("RGB")
-    except (OSError, UnidentifiedImageError):
-        raise InputError(Fault("the picture cannot be read", str(path), "a PNG of the frame")) from None
+    from renderer.pictures.reading import read_8_bit
+
+    picture = Image.fromarray(read_8_bit(path))
     if picture.width > WIDEST:
         picture = picture.resize((WIDEST, round(picture.height * WIDEST / picture.width)), Image.Resampling.LANCZOS)
     buffer = io.BytesIO()
