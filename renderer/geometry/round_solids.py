@@ -6,7 +6,7 @@ from __future__ import annotations
 import numpy as np
 
 from renderer.arrays.assets import TriangleAsset
-from renderer.geometry.exact_trig import circle, sine_cosine_deg
+from renderer.geometry.circles import arc, circle
 from renderer.geometry.positions import Floats, Indices
 from renderer.geometry.sheets import asset
 
@@ -64,13 +64,6 @@ class Lathe:
             np.concatenate(self.normals),
             np.concatenate(self.uvs),
         )
-
-
-def arc(radius_m: float, from_deg: float, to_deg: float, steps: int) -> tuple[Floats, Floats]:
-    """(steps + 1, 2) points (radius, y) on a circle about the origin, and outward normals; angles up from level."""
-    sine, cosine = sine_cosine_deg(from_deg + (to_deg - from_deg) * np.arange(steps + 1) / steps)
-    normals = np.column_stack([cosine, sine])
-    return radius_m * normals, normals
 
 
 def cylinder(radius_m: float, height_m: float, segments: int) -> TriangleAsset:

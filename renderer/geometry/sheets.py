@@ -8,8 +8,9 @@ import numpy as np
 
 from renderer.arrays.assets import TriangleAsset
 from renderer.arrays.packing import pack
-from renderer.geometry.exact_trig import circle, sine_cosine, sine_cosine_deg
+from renderer.geometry.circles import circle
 from renderer.geometry.positions import Floats, Indices
+from renderer.optics.exact_functions import sine_cosine_deg
 
 Wave = tuple[float, float, float, float]
 
@@ -64,7 +65,7 @@ def wave_height(x: Floats, z: Floats, waves: tuple[Wave, ...]) -> tuple[Floats, 
     for amplitude, wavelength, direction, phase in waves:
         sine_d, cosine_d = (float(v) for v in sine_cosine_deg(direction))
         k = 2.0 * math.pi / wavelength
-        sine, cosine = sine_cosine(k * (sine_d * x - cosine_d * z) + math.radians(phase))
+        sine, cosine = sine_cosine_deg(360.0 / wavelength * (sine_d * x - cosine_d * z) + phase)
         height += amplitude * sine
         slope_x += amplitude * k * sine_d * cosine
         slope_z -= amplitude * k * cosine_d * cosine

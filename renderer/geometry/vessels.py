@@ -11,9 +11,11 @@ import math
 import numpy as np
 
 from renderer.arrays.assets import TriangleAsset
+from renderer.geometry.circles import arc
 from renderer.geometry.flat_solids import box_between
-from renderer.geometry.round_solids import Lathe, arc
+from renderer.geometry.round_solids import Lathe
 from renderer.geometry.sheets import asset
+from renderer.optics.exact_functions import DEGREE, arccosine
 
 Vector = tuple[float, float, float]
 
@@ -62,7 +64,8 @@ def bowl_filling(radius_m: float, wall_m: float, fill: float) -> TriangleAsset:
     inner, reach = radius_m - wall_m, radius_m - wall_m / 2.0
     top = -inner * (1.0 - fill)
     lathe = Lathe(segments)
-    points, normals = arc(reach, -90.0, math.degrees(math.asin(top / reach)), segments // 4)
+    rim_deg = 90.0 - float(arccosine(top / reach)) / DEGREE
+    points, normals = arc(reach, -90.0, rim_deg, segments // 4)
     points[-1, 1] = top
     lathe.band(points, normals)
     lathe.level(0.0, float(points[-1, 0]), top, up=True)
