@@ -11,12 +11,14 @@ A frame number has at least four digits. Portions are named by their rounds and 
 
 from __future__ import annotations
 
+import hashlib
 from pathlib import Path
 
 from renderer.frames.round_ranges import Ranges
 from renderer.shot.model import FrameShot
 
 PORTION_KIND = ".portion"
+MOST_RANGES_IN_NAME = 4
 
 
 def shot_name(source: Path, variant: str) -> str:
@@ -57,4 +59,8 @@ def portion_folder(out: Path, shot: FrameShot) -> Path:
 
 def portion_path(out: Path, shot: FrameShot, ranges: Ranges, mark: str) -> Path:
     """Where these rounds go."""
-    return portion_folder(out, shot) / f"{ranges[0][0]:06d}-{ranges[-1][1] - 1:06d}.{mark}{PORTION_KIND}"
+    if len(ranges) <= MOST_RANGES_IN_NAME:
+        rounds = "+".join(f"{first:06d}-{stop - 1:06d}" for first, stop in ranges)
+    else:
+        rounds = f"{ranges[0][0]:06d}-{ranges[-1][1] - 1:06d}.{hashlib.sha256(repr(ranges).encode()).hexdigest()[:8]}"
+    return portion_folder(out, shot) / f"{rounds}.{mark}{PORTION_KIND}"
