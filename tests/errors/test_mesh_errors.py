@@ -49,6 +49,12 @@ def cube_ply(folder: Path) -> Path:
     return ply(folder / "cube.ply", CUBE_POINTS, CUBE_FACES)
 
 
+def changed_ply(folder: Path, old: bytes, new: bytes) -> Path:
+    path = cube_ply(folder)
+    path.write_bytes(path.read_bytes().replace(old, new))
+    return path
+
+
 def cube_glb(folder: Path) -> Path:
     return glb(folder / "cube.glb", *gltf_header(CUBE_POINTS, CUBE_FACES, [{"mesh": 0}]))
 
@@ -153,6 +159,7 @@ MESHES: list[tuple[str, Callable[[Path], Path], str]] = [
         "no x, y and z",
     ),
     ("PLY cut short", cut(cube_ply, 0.6), "cut short"),
+    ("PLY that states much", lambda folder: changed_ply(folder, b"vertex 8", b"vertex 30000000"), "at least 360,000,"),
     (
         "PLY with words for numbers",
         text("a.ply", PLY_HEAD.format(v=3, f=1) + "0 0 one\n0 1 0\n1 0 0\n3 0 1 2\n"),
