@@ -17,6 +17,10 @@ class Stop:
         self.asked = False
         self.patient = False
 
+    def was_asked(self) -> bool:
+        """Whether to stop now."""
+        return self.asked
+
     def receive(self, number: int, frame: FrameType | None) -> None:
         """Take a signal."""
         if self.asked or not self.patient:

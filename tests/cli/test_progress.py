@@ -10,7 +10,7 @@ import pytest
 
 from renderer.cli import progress
 from renderer.cli.progress import Follow, span
-from renderer.cli.quantities import Duration, Portion
+from renderer.cli.quantities import duration_s, portion
 from renderer.cli.talk import Talk
 from renderer.frames import events
 
@@ -95,17 +95,17 @@ def test_times_read_at_a_glance(seconds: float, words: str) -> None:
     ("text", "seconds"), [("90", 90.0), ("90s", 90.0), ("10m", 600.0), ("1.5h", 5400.0), ("1h30m", 5400.0)]
 )
 def test_times_are_read(text: str, seconds: float) -> None:
-    assert Duration().convert(text, None, None) == seconds
+    assert duration_s(text) == seconds
 
 
 @pytest.mark.parametrize("text", ["", "0", "ten", "10 parsecs", "-5", "m", "1e3"])
 def test_what_is_no_time_is_refused(text: str) -> None:
     with pytest.raises(click.BadParameter):
-        Duration().convert(text, None, None)
+        duration_s(text)
 
 
 def test_portions_are_read_and_refused() -> None:
-    assert Portion().convert("2/8", None, None) == (2, 8)
+    assert portion("2/8") == (2, 8)
     for text in ("0/8", "9/8", "8", "a/b", "1/0"):
         with pytest.raises(click.BadParameter):
-            Portion().convert(text, None, None)
+            portion(text)
