@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import math
 from pathlib import Path
 
 import numpy as np
@@ -12,6 +11,7 @@ from renderer.arrays import lights
 from renderer.arrays.packing import pack
 from renderer.base.constants import N_WAVELENGTHS
 from renderer.base.errors import Fault, InputError
+from renderer.optics.exact_functions import sine_cosine_deg
 from renderer.shot.model import Axes, FrameShot, Sky, Sun
 
 Floats = npt.NDArray[np.float64]
@@ -32,7 +32,7 @@ def sun_arrays(sun: Sun | None, sky_kind: str, notes: list[str]) -> lights.Sun:
     radiance = optics.sun_radiance(sun.elevation_deg, sun.visibility_km)
     u1, u2 = optics.LIMB_DARKENING
     shines = float(radiance.max() > 0.0)
-    cosine = math.cos(math.radians(optics.ANGULAR_RADIUS_DEG))
+    cosine = float(sine_cosine_deg(optics.ANGULAR_RADIUS_DEG)[1])
     numbers = [shines, *sun.direction, cosine, optics.solid_angle_sr(), u1, u2, optics.limb_mean()]
     return lights.Sun(pack(numbers), pack(radiance))
 
@@ -103,7 +103,10 @@ def node_luminance(coefficients: Floats, basis: Floats) -> Floats:
     """Luminance at the nodes of a sky, (n_rows, n_columns). [cd/m2]"""
     from renderer.colour.observer import luminance
 
-    return np.asarray(coefficients @ luminance(basis))
+    total = np.zeros(coefficients.shape[:2])
+    for k, value in enumerate(luminance(basis)):  # in this order on every machine, since draws depend on it
+        total += coefficients[:, :, k] * value
+    return total
 
 
 def chances(coefficients: Floats, basis: Floats) -> tuple[Floats, Floats]:
@@ -114,7 +117,7 @@ def chances(coefficients: Floats, basis: Floats) -> tuple[Floats, Floats]:
     node = np.maximum(node_luminance(coefficients, basis), 0.0)
     n_rows, n_columns = node.shape
     across = 0.5 * (node + np.roll(node, -1, axis=1))
-    sine = np.sin(np.radians(90.0 - 180.0 * np.arange(n_rows) / (n_rows - 1)))
+    sine, _ = sine_cosine_deg(90.0 - 180.0 * np.arange(n_rows) / (n_rows - 1))
     solid = ((sine[:-1] - sine[1:]) * 2.0 * np.pi / n_columns)[:, None] * np.ones((1, n_columns))
     bright = 0.5 * (across[:-1] + across[1:]) * solid
     total = bright.sum()
