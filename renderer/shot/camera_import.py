@@ -10,11 +10,11 @@ import math
 import re
 import struct
 from dataclasses import dataclass
+from functools import lru_cache
 from pathlib import Path
 from typing import Any
 
-from renderer.base.errors import nearest_name
-from renderer.shot.schema.flaws import KEY, Flaw
+from renderer.shot.schema.flaws import KEY, Flaw, clean, nearest
 from renderer.shot.schema.numbers import is_number
 from renderer.shot.transforms import IDENTITY, Matrix, combine, determinant, joined, of_quaternion, square
 
@@ -46,12 +46,18 @@ def split_node(name: str) -> tuple[str, str]:
 def read_camera(path: Path, node_name: str) -> ImportedCamera | Flaw:
     """The camera of that node, or the file's only camera where none is named; or what is wrong."""
     try:
-        document = json.loads(_json_text(path))
-        return _camera(document, node_name)
+        state = path.stat()
+        return _read(path, node_name, state.st_mtime_ns, state.st_size)
     except _Refused as error:
         return error.flaw
     except (OSError, UnicodeDecodeError, json.JSONDecodeError, RecursionError):
         return Flaw((), f"`{KEY}` names a file that is not glTF", "a .glb or .gltf file, version 2")
+
+
+@lru_cache(maxsize=64)
+def _read(path: Path, node_name: str, changed: int, size: int) -> ImportedCamera:
+    """The camera of a file in one state, so that a thousand frames read it once."""
+    return _camera(json.loads(_json_text(path)), node_name)
 
 
 class _Refused(Exception):
@@ -90,11 +96,11 @@ def _camera(document: Any, node_name: str) -> ImportedCamera:
     if not held:
         raise _Refused(f"`{KEY}` names a file without a camera", "a glTF file with a perspective camera")
     chosen = [index for index, name in zip(held, names, strict=True) if name == node_name] if node_name else held
-    listing = f"one of {', '.join(name[:60] for name in names[:8])}"
+    listing = f"one of {', '.join(clean(name) for name in names[:8])}"
     if not chosen:
-        raise _Refused(f'`{KEY}` names no camera: "{node_name[:60]}"', listing, nearest_name(node_name, names))
+        raise _Refused(f'`{KEY}` names no camera: "{clean(node_name)}"', listing, nearest(node_name, names))
     if len(chosen) > 1:
-        what = f'"{node_name[:60]}" twice' if node_name else f"a file with {len(chosen)} cameras and does not choose"
+        what = f'"{clean(node_name)}" twice' if node_name else f"a file with {len(chosen)} cameras and does not choose"
         raise _Refused(f"`{KEY}` names {what}", listing)
     camera = cameras[_index(nodes[chosen[0]]["camera"], cameras) or 0]
     view = camera.get("perspective")

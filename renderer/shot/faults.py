@@ -8,7 +8,7 @@ from typing import Any
 
 from renderer.base.errors import Fault
 from renderer.shot.positions import Place, positions
-from renderer.shot.schema.flaws import KEY, Flaw, Path
+from renderer.shot.schema.flaws import KEY, Flaw, Path, clean
 
 MOST_FAULTS = 100  # that are listed; the rest is counted
 
@@ -24,7 +24,7 @@ def dotted(path: Path) -> str:
         if isinstance(part, int):
             text += f"[{part}]"
         else:
-            text += ("." if text else "") + (part if _BARE.fullmatch(part) else f'"{part}"')
+            text += ("." if text else "") + (clean(part) if _BARE.fullmatch(part) else f'"{clean(part)}"')
     return text
 
 

@@ -10,8 +10,7 @@ from collections.abc import Sequence
 from pathlib import Path
 from urllib.parse import unquote
 
-from renderer.base.errors import nearest_name
-from renderer.shot.schema.flaws import KEY, Flaw
+from renderer.shot.schema.flaws import KEY, Flaw, clean, nearest
 
 _MARKS = re.compile(r"#+")
 LARGEST_GLTF = 64 * 1024 * 1024  # bytes of JSON
@@ -71,7 +70,10 @@ class Files:
         except (OSError, ValueError):
             what = "cannot be looked up"
         return Flaw(
-            (), f'the file "{name[:200]}" of frame {frame} {what}', "a file, relative to the shot file", _near(path)
+            (),
+            f'the file "{clean(name, 200)}" of frame {frame} {what}',
+            "a file, relative to the shot file",
+            _near(path),
         )
 
     def content(self, path: Path) -> str:
@@ -117,4 +119,4 @@ def _near(path: Path) -> str:
             names = [item.name for _, item in zip(range(MOST_NEIGHBOURS), items, strict=False)]
     except OSError:
         return ""
-    return nearest_name(path.name, [name for name in names if name != path.name])
+    return nearest(path.name, [name for name in names if name != path.name])

@@ -36,7 +36,8 @@ def _count(part: str, text: str) -> int:
         raise Flawed(Flaw((), f'`{{key}}` runs backwards: "{part}"', f'the first frame first: "{last}-{first}"'))
     if match[4] is not None and int(match[4]) == 0:
         raise Flawed(Flaw((), f'`{{key}}` has a step of 0: "{part}"', "a step of 1 or more"))
-    return last - first + 1
+    step = int(match[4]) if match[3] == "x" else 1
+    return (last - first) // step + 1
 
 
 def frames_of(text: str) -> tuple[int, ...]:

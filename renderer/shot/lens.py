@@ -8,7 +8,7 @@ from renderer.shot.model import Camera, Vector
 from renderer.shot.transforms import unit
 
 NEWTON_STEPS = 20
-CONVERGED = 1e-10  # of a focal length
+EXACT, CONVERGED = 1e-15, 1e-10  # of a focal length: when to stop, and what is good enough after the last step
 
 Coefficients = tuple[float, float, float, float, float]
 
@@ -35,7 +35,7 @@ def straighten(lens: Coefficients, x_shown: float, y_shown: float) -> tuple[floa
     The polynomial is that of D. C. Brown, Photogrammetric Engineering 32(3), 1966, from ideal to shown.
     """
     k1, k2, k3, p1, p2 = lens
-    x, y = x_shown, y_shown
+    x, y, miss = x_shown, y_shown, float("inf")
     for _ in range(NEWTON_STEPS):
         q = x * x + y * y
         radial, slope = 1.0 + q * (k1 + q * (k2 + q * k3)), k1 + q * (2.0 * k2 + 3.0 * q * k3)
@@ -45,15 +45,14 @@ def straighten(lens: Coefficients, x_shown: float, y_shown: float) -> tuple[floa
         xy = 2.0 * x * y * slope + 2.0 * p1 * x + 2.0 * p2 * y
         yy = radial + 2.0 * y * y * slope + 6.0 * p1 * y + 2.0 * p2 * x
         determinant = xx * yy - xy * xy
-        if max(abs(miss_x), abs(miss_y)) < CONVERGED:
-            return (x, y) if x * x + y * y <= fold(lens) else None
-        if determinant == 0.0:
-            return None
+        miss = max(abs(miss_x), abs(miss_y))
+        if miss < EXACT or determinant == 0.0:
+            break
         x -= (miss_x * yy - miss_y * xy) / determinant
         y -= (miss_y * xx - miss_x * xy) / determinant
         if not abs(x) + abs(y) < 1e6:
             return None
-    return None
+    return (x, y) if miss < CONVERGED and x * x + y * y <= fold(lens) else None
 
 
 def fold(lens: Coefficients) -> float:

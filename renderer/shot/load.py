@@ -9,12 +9,12 @@ from typing import Any
 
 from pydantic import ValidationError
 
-from renderer.base.errors import Fault, InputError, nearest_name
+from renderer.base.errors import Fault, InputError
 from renderer.shot.faults import dotted, faults_of
 from renderer.shot.files import Files
 from renderer.shot.overrides import Override, apply, parse_overrides, variant_overrides
 from renderer.shot.reader import read_tables
-from renderer.shot.schema.flaws import Flaw
+from renderer.shot.schema.flaws import Flaw, clean, nearest
 from renderer.shot.schema.flaws import Path as KeyPath
 from renderer.shot.schema.leaves import FileName
 from renderer.shot.schema.shot_file import ShotFile
@@ -103,9 +103,9 @@ class _Source:
         if faults:
             raise InputError(*dict.fromkeys(faults))
         if chosen is not None and chosen not in variants:
-            what = f'the shot has no variant named "{chosen[:60]}"'
-            expected = f"one of {', '.join(variants)}" if variants else "no --variant"
-            raise InputError(Fault(what, str(self.file), expected, nearest_name(chosen, variants)))
+            what = f'the shot has no variant named "{clean(chosen)}"'
+            expected = f"one of {', '.join(clean(name) for name in [*variants][:8])}" if variants else "no --variant"
+            raise InputError(Fault(what, str(self.file), expected, nearest(chosen, variants)))
         return found
 
     def refuse(self, flaws: list[Flaw], landed: list[tuple[KeyPath, Override]]) -> None:

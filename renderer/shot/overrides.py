@@ -14,10 +14,10 @@ from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import dataclass
 from typing import Any
 
-from renderer.base.errors import Fault, InputError, nearest_name
-from renderer.shot.schema.flaws import Flaw, Flawed, Path, shown
+from renderer.base.errors import Fault, InputError
+from renderer.shot.schema.flaws import Flaw, Flawed, Path, clean, nearest, shown
 from renderer.shot.schema.shot_file import ShotFile
-from renderer.shot.schema.tree import table_at
+from renderer.shot.schema.tree import is_table, table_at
 
 LONGEST_KEY = 1000
 DEEPEST = 24
@@ -95,7 +95,7 @@ def parse_overrides(texts: Iterable[str]) -> list[Override]:
     found: list[Override] = []
     faults: list[Fault] = []
     for text in texts:
-        where = f"--override {text[:120]}"
+        where = f"--override {clean(text, 120)}"
         key, equals, value = _split(text)
         if not equals:
             faults.append(Fault(f"{shown(text)} has no equals sign", where, "--override key=value"))
@@ -129,17 +129,15 @@ def variant_overrides(name: str, changes: Mapping[str, Any]) -> Iterator[Overrid
 
 
 def flattened(changes: Mapping[str, Any], at: tuple[str, ...] = ()) -> Iterator[tuple[tuple[str, ...], Any]]:
-    """A variant's keys in quotes, or without: ``sun.azimuth = 25`` makes a table of a table, which means the same."""
+    """A variant's keys and values. Keys in quotes hold their dots; without quotes TOML makes tables of them,
+    ``sun.azimuth = 25``, which are followed down as far as the schema has tables, and so mean the same."""
     for key, value in changes.items():
-        if (
-            isinstance(value, dict)
-            and "." not in key
-            and not at
-            and key in ("units", "frames", "camera", "sun", "sky", "render", "checks")
-        ):
-            yield from (((key, *rest), entry) for rest, entry in flattened(value, (key,)))
+        path = (*at, key)
+        whole = "." in key or "[" in key or not isinstance(value, dict) or not value
+        if whole or path[0] in FIXED or not is_table(ShotFile, path):
+            yield path, value
         else:
-            yield (key,), value
+            yield from flattened(value, path)
 
 
 def apply(
@@ -164,15 +162,15 @@ def _lay(tables: dict[str, Any], override: Override) -> Path:
         raise Flawed(Flaw((override.path[0],), f"`{override.path[0]}` cannot be overridden", "another key"))
     place: Any = tables
     path: Path = ()
-    for part, following in zip(override.path[:-1], override.path[1:], strict=True):
-        place, path = _enter(place, path, part, following)
+    for part in override.path[:-1]:
+        place, path = _enter(place, path, part)
     last = override.path[-1]
     if isinstance(place, list):
         index = _row(place, path, last)
         place[index] = copy.deepcopy(override.value)
         return (*path, index)
     if not isinstance(place, dict) or isinstance(last, int):
-        raise Flawed(Flaw((*path, last), "`{key}` is not in a list or a table", "a key of the shot file"))
+        raise Flawed(Flaw((*path, last), "`{key}` is no place in a list or a table", "a key of the shot file"))
     table = table_at(ShotFile, path)
     for alternatives in table.ONE_OF if table is not None else ():
         for other in alternatives.excluded_by(last):
@@ -181,20 +179,24 @@ def _lay(tables: dict[str, Any], override: Override) -> Path:
     return (*path, last)
 
 
-def _enter(place: Any, path: Path, part: str | int, following: str | int) -> tuple[Any, Path]:
-    """One step down; a table that is not there yet is made."""
+def _enter(place: Any, path: Path, part: str | int) -> tuple[Any, Path]:
+    """One step down; a table that is not there yet is made, and one that is written in short is written out."""
     if isinstance(place, list):
         index = _row(place, path, part)
         return place[index], (*path, index)
     if not isinstance(place, dict) or isinstance(part, int):
-        raise Flawed(Flaw((*path, part), "`{key}` is not in a list or a table", "a key of the shot file"))
+        raise Flawed(Flaw((*path, part), "`{key}` is no place in a list or a table", "a key of the shot file"))
     if part not in place:
         table = table_at(ShotFile, path)
         if table is not None and table.is_list(part):
             place[part] = []
         else:
             place[part] = {}
-    return place[part], (*path, part)
+    below = (*path, part)
+    table = table_at(ShotFile, below)
+    if table is not None and not isinstance(place[part], dict):
+        place[part] = table.shorthand(place[part])
+    return place[part], below
 
 
 def _row(rows: list[Any], path: Path, part: str | int) -> int:
@@ -210,5 +212,9 @@ def _row(rows: list[Any], path: Path, part: str | int) -> int:
         if isinstance(row, dict) and row.get("name") == part:
             return index
     kind = str(path[-1]) if path else "the shot"
-    expected = f"one of {', '.join(known[:8])}, or a number as in {kind}[0]" if known else f"a number, as in {kind}[0]"
-    raise Flawed(Flaw((*path, part), f'`{kind}` has nothing named "{part[:60]}"', expected, nearest_name(part, known)))
+    expected = (
+        f"one of {', '.join(clean(name) for name in known[:8])}, or a number as in {kind}[0]"
+        if known
+        else f"a number, as in {kind}[0]"
+    )
+    raise Flawed(Flaw((*path, part), f'`{kind}` has nothing named "{clean(part)}"', expected, nearest(part, known)))

@@ -8,6 +8,7 @@ from pathlib import Path
 from typing import Any
 
 from renderer.base.errors import Fault, InputError
+from renderer.shot.schema.flaws import nearest
 
 LARGEST_FILE = 8 * 1024 * 1024  # bytes; 50,000 placements fit
 DEEPEST = 24  # brackets inside brackets, and parts of a dotted key
@@ -48,12 +49,10 @@ def read_text(path: Path) -> str:
 
 def _neighbour(path: Path) -> str:
     """The nearest shot file in the same folder."""
-    from renderer.base.errors import nearest_name
-
     if not path.parent.is_dir():
         return ""
     names = [item.name for _, item in zip(range(10_000), path.parent.iterdir(), strict=False)]
-    near = nearest_name(path.name, [name for name in names if name.endswith(".toml") and name != path.name])
+    near = nearest(path.name, [name for name in names if name.endswith(".toml") and name != path.name])
     return str(path.parent / near) if near else ""
 
 

@@ -5,10 +5,13 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, replace
 
+from renderer.base.errors import nearest_name
+
 Path = tuple[str | int, ...]
 
 KEY = "{key}"  # stands in a flaw's sentence for the key that the flaw is at
 
+LONGEST_NAME = 100  # of names that a nearest one is looked for
 SHOWN = 40  # characters of a user's value that are repeated back
 
 
@@ -30,6 +33,16 @@ class Flawed(Exception):
         self.flaws = flaws
 
 
+def clean(text: str, longest: int = 60) -> str:
+    """A user's text as it may stand in a message: short, and nothing in it that a terminal would act on."""
+    return "".join(letter if letter.isprintable() else "?" for letter in text[:longest])
+
+
+def nearest(name: str, known: Iterable[str]) -> str:
+    """The known name most like `name`; a name of absurd length is not searched for."""
+    return nearest_name(name, known) if len(name) <= LONGEST_NAME else ""
+
+
 def below(prefix: Path, flaws: Iterable[Flaw]) -> list[Flaw]:
     """The same flaws, seen from further up."""
     return [replace(flaw, at=prefix + flaw.at) for flaw in flaws]
@@ -46,8 +59,7 @@ def shown(value: object) -> str:
     if isinstance(value, int):
         return str(value) if abs(value) < 10**SHOWN else "so large a number"
     if isinstance(value, str):
-        clean = "".join(letter if letter.isprintable() else "?" for letter in value[: SHOWN + 1])
-        return f'"{clean[:SHOWN]}..."' if len(clean) > SHOWN else f'"{clean}"'
+        return f'"{clean(value, SHOWN)}{"..." if len(value) > SHOWN else ""}"'
     return str(value)[:SHOWN]
 
 

@@ -13,8 +13,7 @@ from typing import Any
 
 from pydantic_core import PydanticCustomError, core_schema
 
-from renderer.base.errors import nearest_name
-from renderer.shot.schema.flaws import Flaw, Flawed, listed, refusal
+from renderer.shot.schema.flaws import Flaw, Flawed, listed, nearest, refusal
 
 LONGEST_TEXT = 1024
 
@@ -134,7 +133,7 @@ class Choice(Leaf):
     def read(self, value: Any) -> str:
         if isinstance(value, str) and value in self.words:
             return value
-        near = nearest_name(value, self.words) if isinstance(value, str) else ""
+        near = nearest(value, self.words) if isinstance(value, str) else ""
         raise Flawed(refusal(value, self.expects(), nearest=near))
 
     def json(self) -> dict[str, Any]:

@@ -6,8 +6,7 @@ from collections.abc import Iterator
 from functools import cache
 from typing import Any
 
-from renderer.base.errors import nearest_name
-from renderer.shot.schema.flaws import Flaw, Path
+from renderer.shot.schema.flaws import Flaw, Path, clean, nearest
 
 
 @cache
@@ -36,7 +35,9 @@ def repeated_names(shot: dict[str, Any]) -> Iterator[Flaw]:
                     continue
                 if name in taken:
                     yield Flaw(
-                        (kind, index, "name"), f'the name "{name[:60]}" is taken by {taken[name]}', "a name of its own"
+                        (kind, index, "name"),
+                        f'the name "{clean(name)}" is taken by {taken[name]}',
+                        "a name of its own",
                     )
                 taken.setdefault(name, f"{kind}[{index}]")
 
@@ -56,7 +57,7 @@ def unknown_materials(shot: dict[str, Any]) -> Iterator[Flaw]:
 
 
 def _unknown(at: Path, name: str, known: tuple[str, ...], expected: str) -> Flaw:
-    return Flaw(at, f'no material is named "{name[:60]}"', expected, nearest_name(name[:200], known))
+    return Flaw(at, f'no material is named "{clean(name)}"', expected, nearest(name, known))
 
 
 def _references(shot: dict[str, Any]) -> Iterator[tuple[Path, str]]:

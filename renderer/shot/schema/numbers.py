@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from typing import Any
 
 from renderer.shot.keyed import Keys
-from renderer.shot.schema.flaws import Flaw, Flawed, Path, below, refusal
+from renderer.shot.schema.flaws import Flaw, Flawed, Path, below, clean, refusal
 from renderer.shot.schema.leaves import Leaf
 
 LARGEST = 1e12  # beyond any shot in any unit, and far from overflow
@@ -164,7 +164,7 @@ def _frame(name: str, taken: dict[int, tuple[float, ...]], flaws: list[Flaw]) ->
     """The frame that a key stands at; 0 with a new flaw where it is none."""
     if not _FRAME.fullmatch(name):
         flaws.append(
-            Flaw((name,), f'"{name[:40]}" is not a frame', f"whole frame numbers as keys, and {EASE} = true or false")
+            Flaw((name,), f'"{clean(name)}" is not a frame', f"whole frame numbers as keys, and {EASE} = true or false")
         )
         return 0
     frame = int(name)

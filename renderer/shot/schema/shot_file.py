@@ -20,6 +20,7 @@ from renderer.shot.schema.sun_and_sky import Sky, Sun
 from renderer.shot.schema.table import Table, key
 from renderer.shot.schema.units import Frames, Units
 
+MOST_VARIANTS = 100  # each is checked with the whole shot
 MOST_OBJECTS = 65_535  # an object's number has 16 bits, and 0 stands for none
 
 
@@ -86,7 +87,7 @@ class ShotFile(Table):
         [], "Rainbows as the shot shows them", '[{ name = "comp bow", radius = 41.5 }]', "none"
     )
     checks: Checks = key(Checks(), "Settings of the check command", '{ fail_on = "impossible" }')
-    variants: dict[str, Annotated[dict[str, Any], Changes()]] = key(
+    variants: Annotated[dict[str, Annotated[dict[str, Any], Changes()]], Field(max_length=MOST_VARIANTS)] = key(
         {},
         "Named sets of overrides, [variants.NAME]; `--variant NAME` takes one",
         '{ noon = { "sun.elevation" = 60.0 } }',

@@ -10,8 +10,7 @@ from pydantic import BaseModel, ConfigDict, Field, ValidationError, ValidatorFun
 from pydantic.fields import FieldInfo
 from pydantic_core import PydanticCustomError
 
-from renderer.base.errors import nearest_name
-from renderer.shot.schema.flaws import Flaw, Path, below, listed, refusal
+from renderer.shot.schema.flaws import Flaw, Path, below, clean, listed, nearest, refusal
 from renderer.shot.schema.leaves import Leaf
 
 UNIT_ENDINGS = ("_mm", "_cm", "_m", "_km", "_ft", "_in", "_nm", "_deg", "_degrees", "_k", "_c", "_s")
@@ -159,9 +158,9 @@ class Table(BaseModel):
             stem = name.removesuffix(ending)
             if stem != name and stem in known:
                 leaf = leaf_of(known[stem])
-                return Flaw((name,), f"no key is named `{name[:60]}`", leaf.expects() if leaf else "", stem)
-        near = nearest_name(name, known)
-        return Flaw((name,), f"no key is named `{name[:60]}`", "" if near else f"one of {', '.join(known)}", near)
+                return Flaw((name,), f"no key is named `{clean(name)}`", leaf.expects() if leaf else "", stem)
+        near = nearest(name, known)
+        return Flaw((name,), f"no key is named `{clean(name)}`", "" if near else f"one of {', '.join(known)}", near)
 
 
 def _custom(flaws: list[Flaw]) -> PydanticCustomError:

@@ -11,17 +11,28 @@ from renderer.shot.schema.table import Table
 
 def table_at(root: type[Table], path: Path) -> type[Table] | None:
     """The kind of table at a path from `root`; None where no table of a known kind stands there."""
+    table, inside = _follow(root, path)
+    return None if inside else table
+
+
+def is_table(root: type[Table], path: Path) -> bool:
+    """Whether a table, or a list or table of tables, stands at a path from `root`."""
+    return _follow(root, path)[0] is not None
+
+
+def _follow(root: type[Table], path: Path) -> tuple[type[Table] | None, str]:
+    """The kind of table at a path, and "list" or "dict" where the path ends at many of them."""
     found: type[Table] | None = root
-    inside = ""  # "list" or "dict" while a member of one is awaited
+    inside = ""
     for part in path:
         if found is None:
-            return None
+            return None, ""
         if inside:
             inside = ""
             continue
         info = found.keys().get(part) if isinstance(part, str) else None
         found, inside = kind_of(info.annotation) if info is not None else (None, "")
-    return None if inside else found
+    return found, inside
 
 
 def kind_of(annotation: Any) -> tuple[type[Table] | None, str]:
