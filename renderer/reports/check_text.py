@@ -9,7 +9,7 @@ from typing import Any
 from renderer.reports import wording
 
 WIDTH = 100
-MOST_STRETCHES = 6  # of frames whose bows are listed; the rest are in the JSON
+MOST_STRETCHES = 4  # of frames whose bows are listed; the rest are in the JSON
 
 Paint = Callable[[str, str], str]  # (text, severity or "quiet" or "title") -> text, coloured or not
 
@@ -55,8 +55,8 @@ def _bow_lines(data: dict[str, Any]) -> list[str]:
     """Where the bows of the sun stand, by stretches of frames."""
     columns, rows = data["pixels"]
     lines = [f"Where the bows of this sun stand, in pixels of {columns} x {rows} from the top left:"]
-    joined = wording.stretches(data["expected_bows"])
-    for frame, last in joined[:MOST_STRETCHES]:
+    shown, n_more = wording.few(wording.stretches(data["expected_bows"]), MOST_STRETCHES)
+    for frame, last in shown:
         span = f"frame {frame['frame']}" if last == frame["frame"] else f"frames {frame['frame']}-{last}"
         if frame["why_not"]:
             lines.append(f"  {span}: none. {frame['why_not']}")
@@ -65,6 +65,6 @@ def _bow_lines(data: dict[str, Any]) -> list[str]:
         for bow in frame["bows"]:
             first = f"    {bow['name']:<17}"
             lines += textwrap.wrap(wording.bow_words(bow), WIDTH, initial_indent=first, subsequent_indent=" " * 21)
-    if len(joined) > MOST_STRETCHES:
-        lines.append(f"  ... and {len(joined) - MOST_STRETCHES} more; --json has them all")
+    if n_more:
+        lines.append(f"  ({n_more} more in between; --json has them all)")
     return lines

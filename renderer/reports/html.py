@@ -43,18 +43,16 @@ def _environment() -> Environment:
 
 def check_html(data: dict[str, Any], plates: Sequence[Plate] = ()) -> str:
     """The page for the report of `check_data`, with pictures above the findings."""
-    joined = wording.stretches(data["expected_bows"])
+    shown, n_more = wording.few(wording.stretches(data["expected_bows"]), MOST_STRETCHES)
     page: str = (
         _environment()
         .get_template("check_page.html.j2")
-        .render(
-            data=data, plates=plates, stretches=joined[:MOST_STRETCHES], n_more=max(0, len(joined) - MOST_STRETCHES)
-        )
+        .render(data=data, plates=plates, stretches=shown, n_more=n_more)
     )
     return page
 
 
-MOST_STRETCHES = 24  # rows of the table of bows; a page for people, where JSON has every frame
+MOST_STRETCHES = 12  # rows of the table of bows; a page for people, where JSON has every frame
 
 
 def write_html(page: str, path: Path) -> None:

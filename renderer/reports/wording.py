@@ -88,6 +88,14 @@ def stretches(frames: list[dict[str, Any]]) -> list[tuple[dict[str, Any], int]]:
     return joined
 
 
+def few(joined: list[tuple[dict[str, Any], int]], most: int) -> tuple[list[tuple[dict[str, Any], int]], int]:
+    """At most so many of the stretches, spread evenly with the first and the last; and how many are left out."""
+    if len(joined) <= most:
+        return joined, 0
+    picked = [joined[round(k * (len(joined) - 1) / (most - 1))] for k in range(most)]
+    return picked, len(joined) - most
+
+
 def verdict(data: dict[str, Any]) -> str:
     """The check in one line."""
     counts = data["counts"]

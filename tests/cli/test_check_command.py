@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import json
 import re
+import time
 from html.parser import HTMLParser
 from pathlib import Path
 from typing import Any
@@ -190,3 +191,48 @@ def test_a_log_of_json_lines(tmp_path: Path) -> None:
     run = antisolar("check", write_shot(tmp_path), "--log", "json")
     (line,) = [json.loads(line) for line in run.stderr.splitlines()]
     assert (line["event"], line["frames"]) == ("check", 3)
+
+
+MOVING = """\
+format = 1
+[frames]
+range = "1001-2000"
+[camera]
+position = { 1001 = [0.0, 1.7, 0.0], 2000 = [60.0, 1.7, 0.0] }
+target = { 1001 = [0.0, 3.0, -10.0], 2000 = [60.0, 3.0, -12.0] }
+focal_length = 18.0
+pixels = [1280, 720]
+[sun]
+elevation = { 1001 = 14.0, 2000 = 34.0 }
+azimuth = { 1001 = 180.0, 2000 = 200.0 }
+[sky]
+kind = "clear"
+[[objects]]
+name = "tank"
+shape = { tank = { size = [0.3, 0.2, 0.2], wall = 0.01, fill = 0.8, filling = "water" } }
+material = "soda-lime glass"
+[[bows_to_check]]
+name = "right"
+centre = { azimuth = { 1001 = 0.0, 2000 = 20.0 }, elevation = { 1001 = -14.0, 2000 = -34.0 } }
+radius = 41.6
+[[bows_to_check]]
+name = "left behind"
+order = 2
+centre = { azimuth = 0.0, elevation = -14.0 }
+radius = 51.8
+"""
+
+
+def test_a_thousand_frames_check_in_less_than_five_seconds(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    """From the command line's start to its report, in processor time, so whatever else the machine does."""
+    from renderer.cli.running import run
+
+    start = time.process_time()
+    code = run(["check", str(write_shot(tmp_path, MOVING)), "--quiet"])
+    assert time.process_time() - start < 5.0
+    said = capsys.readouterr().out
+    assert code == 1
+    assert "[impossible] Bow centre: left behind" in said
+    assert "right" not in re.findall(r"\] [^:]*: (\w+)  bow", said)
+    assert "frame 1001\n" in said
+    assert "frame 2000\n" in said
