@@ -10,8 +10,8 @@ import numpy as np
 import numpy.typing as npt
 
 from renderer.arrays.assets import SphereAsset, TriangleAsset
-from renderer.geometry.parts import composed
-from renderer.shot.model import Material, Object
+from renderer.geometry.parts import composed, normal_matrix
+from renderer.shot.model import Material, Object, Vector
 
 if TYPE_CHECKING:
     from renderer.checks.gap_measure import Fit
@@ -27,6 +27,7 @@ class Facts:
     def __init__(self) -> None:
         self._contents: dict[Path, str] = {}
         self._meshes: dict[Key, MeshReport] = {}
+        self._facings: dict[Key, Floats] = {}
         self._fits: dict[Key, Fit | None] = {}
         self._indices: dict[Key, tuple[float, float]] = {}
 
@@ -57,6 +58,15 @@ class Facts:
         if key not in self._meshes:
             self._meshes[key] = _inspect(item)
         return self._meshes[key]
+
+    def facing(self, item: Object) -> Vector:
+        """The sum of an object's faces as vectors of area along their normals, as placed: where a sheet faces. [m2]"""
+        key = self.geometry_key(item)
+        if key not in self._facings:
+            mesh = triangles(item)
+            self._facings[key] = np.zeros(3) if mesh is None else area_vector(mesh)
+        x, y, z = normal_matrix(item.matrices[0]) @ self._facings[key]
+        return float(x), float(y), float(z)
 
     def fit(self, vessel: Object, filling: Object) -> Fit | None:
         """How a filling lies in a vessel, in the vessel's metres; None where one is an analytic sphere.
@@ -108,6 +118,12 @@ def triangles(item: Object) -> TriangleAsset | None:
     every = assets(item)
     found = [asset for asset in every if isinstance(asset, TriangleAsset)]
     return joined(found) if len(found) == len(every) else None
+
+
+def area_vector(mesh: TriangleAsset) -> Floats:
+    """The sum of a mesh's faces as vectors of area along their normals; zero for a closed mesh. [m2]"""
+    corners = mesh.vertices_m[mesh.faces]
+    return np.asarray(np.cross(corners[:, 1] - corners[:, 0], corners[:, 2] - corners[:, 0]).sum(axis=0) / 2.0)
 
 
 def _fit(vessel: TriangleAsset, filling: TriangleAsset, place: Floats) -> Fit:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
+from renderer.checks import sphere
 from renderer.checks.facts import Facts
 from renderer.checks.findings import ADVICE, IMPLAUSIBLE, IMPOSSIBLE, Finding, Fix, Value
 from renderer.checks.keys import object_key
@@ -60,7 +61,14 @@ def _closing_fix(item: Object, facts: Facts) -> Fix:
 
 
 def check_normals(view: FrameView, facts: Facts) -> Iterator[Finding]:
-    """Findings for clear solids that are wound inside out or both ways, or whose stored normals point the other way."""
+    """Findings for clear solids wound inside out or both ways, for sheets that face down, and for stray normals."""
+    for item in view.shot.objects:
+        if item.role == "sheet" and sphere.dot(facts.facing(item), view.axes.up) < 0.0:
+            yield _normals_finding(
+                item, IMPOSSIBLE, "Water surface faces down", 1, "sheets",
+                "What is below a sheet is on the side away from its normals: here the air is under the water.",
+                Fix("Flip the faces of the sheet, so that its normals point up.", {"flip": True}),
+            )  # fmt: skip
     for item in clear_solids(view):
         report = facts.mesh(item)
         if not report.consistent:

@@ -21,6 +21,16 @@ if TYPE_CHECKING:
 STYLES = {"impossible": "red", "implausible": "yellow", "advice": "cyan", "quiet": "bright_black"}
 
 
+def list_rules(context: click.Context, option: click.Parameter, asked: bool) -> None:
+    """Print the names and titles of all rules, a studio's own among them, and end."""
+    if asked and not context.resilient_parsing:
+        from renderer.checks.registry import rules
+
+        for rule in rules():
+            click.echo(f"{rule.name:<22}{rule.title if rule.own else rule.place}")
+        context.exit()
+
+
 @click.command("check")
 @shot_options
 @click.option(
@@ -38,6 +48,9 @@ STYLES = {"impossible": "red", "implausible": "yellow", "advice": "cyan", "quiet
     help="Write a PNG of where the bows stand in the first frame.",
 )
 @click.option("--picture", metavar="FILE", type=FILE, help="A PNG of the first frame, for the report and the overlay.")
+@click.option(
+    "--rules", is_flag=True, is_eager=True, expose_value=False, callback=list_rules, help="List the rules by name."
+)
 @talk_options
 def check(
     shot: Path,

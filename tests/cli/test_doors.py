@@ -129,6 +129,13 @@ def test_the_schema_for_editors_is_printed_whole(tmp_path: Path) -> None:
     assert list(tmp_path.iterdir()) == []
 
 
+def test_the_rules_can_be_listed_for_sign_offs() -> None:
+    from renderer.checks.registry import TABLE
+
+    lines = antisolar("check", "--rules").stdout.splitlines()
+    assert [line.split()[0] for line in lines][: len(TABLE)] == [rule.name for rule in TABLE]
+
+
 def test_materials_lists_shows_and_draws(tmp_path: Path) -> None:
     listed = antisolar("materials", "--json", "-")
     names = [row["name"] for row in json.loads(listed.stdout)["materials"]]

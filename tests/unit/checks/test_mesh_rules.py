@@ -101,6 +101,16 @@ def test_stored_normals_that_point_in_are_found_for_smooth_objects_alone(tmp_pat
     assert ask(check_normals, replace(item, smooth=found.fix.values["objects.block.smooth"])) == []
 
 
+def test_a_water_surface_must_face_up() -> None:
+    lake = build.shape_object("lake", "water_surface", WATER, role="sheet", size=(4.0, 4.0), cells=(4, 4))
+    assert ask(check_normals, lake) == []
+    turned = np.array([[[1.0, 0, 0, 0], [0, -1.0, 0, 0], [0, 0, -1.0, 0]]])
+    (found,) = ask(check_normals, replace(lake, matrices=turned))
+    assert (found.title, found.severity) == ("Water surface faces down", IMPOSSIBLE)
+    mirrored = np.array([[[1.0, 0, 0, 0], [0, -1.0, 0, 0], [0, 0, 1.0, 0]]])
+    assert len(ask(check_normals, replace(lake, matrices=mirrored))) == 1
+
+
 def test_faces_without_area_are_advice_and_doubled_faces_are_not(tmp_path: Path) -> None:
     mesh = trimesh.creation.box((0.2, 0.2, 0.2))
     for name, extra in (("thin", [[0, 0, 1]]), ("twice", mesh.faces[:1])):
