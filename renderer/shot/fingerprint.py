@@ -1,8 +1,8 @@
 """What a frame's picture depends on, in one number: resolved values that change pixels, and the content of its files.
 
 Values are taken as the shot file states them, evaluated at the frame and over its shutter, before any sine or root is
-taken of them, so that the fingerprint is the same on every machine. Names, titles, checks, bows and the number of
-rounds do not count; neither does where files lie or what they are called.
+taken of them, so that the fingerprint is the same on every machine. Names, titles, checks, bows, the number of rounds
+and the seed do not count; neither does where files lie or what they are called.
 """
 
 from __future__ import annotations
@@ -19,7 +19,7 @@ from renderer.shot.schema.table import Table
 
 SALT = "antisolar shot 1"
 PARTS = ("units", "camera", "sun", "sky", "objects", "lights", "render")
-UNCOUNTED = ("name", "rounds")  # keys, wherever they stand
+UNCOUNTED = ("name", "rounds", "seed")  # keys, wherever they stand; a portion states its rounds and seed itself
 
 
 def part_text(value: Any, moment: Moment) -> str:

@@ -12,15 +12,17 @@ from pydantic import ValidationError
 from renderer.base.errors import Fault, InputError
 from renderer.shot.faults import dotted, faults_of
 from renderer.shot.files import Files
+from renderer.shot.moment import Moment
 from renderer.shot.overrides import Override, apply, parse_overrides, variant_overrides
 from renderer.shot.reader import read_tables
+from renderer.shot.resolve_looks import material_flaws
 from renderer.shot.schema.flaws import Flaw, clean, nearest
 from renderer.shot.schema.flaws import Path as KeyPath
 from renderer.shot.schema.leaves import FileName
 from renderer.shot.schema.shot_file import ShotFile
 from renderer.shot.schema.table import find
 from renderer.shot.shot import Shot
-from renderer.shot.walk import leaves
+from renderer.shot.walk import changes_by_frame, leaves
 
 
 def load_shot(
@@ -71,6 +73,9 @@ class _Source:
         except ValidationError as error:
             return None, flaws + find(error), landed
         flaws += self.lost_files(shot)
+        moment = Moment(0, (0.0,), shot, self.files)
+        for name, material in shot.materials.items():
+            flaws += [] if changes_by_frame(material) else material_flaws(moment, name)
         return shot, flaws, landed
 
     def lost_files(self, shot: ShotFile) -> list[Flaw]:

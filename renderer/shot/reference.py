@@ -43,9 +43,9 @@ same schema that checks it, and so is [the JSON Schema](shot.schema.json) that a
   checked like the file itself; so is every variant, whichever is asked for.
 - **Errors.** An unknown key, a number out of range, a name that is not there: each is an error with its line, and all
   of a file are told at once. `nan` and `inf` are no values.
-- **What makes a picture another picture.** The fingerprint of a frame covers every value here that changes pixels,
-  and the content of every file. It does not cover titles, names, the checks, the bows, the number of rounds, or where
-  a file lies and what it is called.
+- **What makes a picture another picture.** The fingerprint of a frame covers every value here that changes pixels, and
+  the content of every file. It does not cover titles, names, the checks, the bows, the number of rounds and the seed
+  (which every portion of the work states for itself), or where a file lies and what it is called.
 - **Not supported yet:** `droplets`, `volumes`, `beams`, `wedge`, `sun.location`, `picture` of a bow to check,
   `scattering` of a material.
 """

@@ -2,10 +2,14 @@
 
 from __future__ import annotations
 
+import numpy as np
+
+from renderer.base.errors import InputError
 from renderer.shot.model import Dispersion, Emission, Material, Surface
 from renderer.shot.moment import Moment
 from renderer.shot.schema import materials as material_schema
 from renderer.shot.schema import surfaces as surface_schema
+from renderer.shot.schema.flaws import Flaw
 from renderer.shot.schema.flaws import Path as KeyPath
 
 LABORATORY_C = 20.0
@@ -29,6 +33,23 @@ def resolve_material(moment: Moment, name: str) -> Material:
         dispersion=None if keys.refractive_index is None else _dispersion(moment, keys.refractive_index),
         absorption_per_m=None if keys.absorption is None else keys.absorption.per_metre,
     )
+
+
+def material_flaws(moment: Moment, name: str) -> list[Flaw]:
+    """What physics has against a material of the shot's own: an index out of all bounds, water that is too hot."""
+    from renderer.optics.materials import material_tables
+
+    keys, material = moment.shot.materials[name], resolve_material(moment, name)
+    law = material.dispersion
+    model, values = (law.model, law.values) if law is not None else (None, ())
+    try:
+        like, absorption = material.like, material.absorption_per_m
+        with np.errstate(all="ignore"):  # what comes out as not-a-number is refused in words
+            material_tables(like, material.temperature_c, material.salinity, model, values, absorption)
+    except InputError as error:
+        stated = [key for key in ("refractive_index", "temperature") if key in keys.model_fields_set]
+        return [Flaw(("materials", name, *stated[:1]), fault.what, fault.expected) for fault in error.faults]
+    return []
 
 
 def _dispersion(moment: Moment, keys: material_schema.RefractiveIndex) -> Dispersion:

@@ -16,6 +16,7 @@ from renderer.shot.moment import Moment, axes_of, shutter_times
 from renderer.shot.resolve_bows import resolve_bow
 from renderer.shot.resolve_camera import resolve_camera
 from renderer.shot.resolve_light import resolve_sky, resolve_sun
+from renderer.shot.resolve_looks import material_flaws
 from renderer.shot.resolve_objects import resolve_light, resolve_object
 from renderer.shot.schema.flaws import Flaw
 from renderer.shot.schema.shot_file import ShotFile
@@ -55,6 +56,7 @@ class Shot:
         self._faults = faults
         self._axes = axes_of(keys)
         self._parts = _parts(keys)
+        self._moving_materials = [name for name, item in keys.materials.items() if changes_by_frame(item)]
         self._texts: dict[tuple[str, int], str] = {}
         self._objects: dict[tuple[str, int], tuple[Object, ...]] = {}
         self._sign_offs = tuple(
@@ -100,6 +102,8 @@ class Shot:
             fingerprint="" if moment.flaws else self._fingerprint(moment),
             fail_on=self.fail_on,
         )
+        for name in self._moving_materials:
+            moment.flaws += material_flaws(moment, name)
         if moment.flaws:
             raise InputError(*self._faults(moment.flaws))
         return resolved

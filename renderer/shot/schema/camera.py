@@ -79,7 +79,7 @@ class Exposure(Table):
 
     stops: Annotated[Scalar | None, Number("stops", Bounds(-60, 60))] = key(
         None,
-        "Exposure in stops: 0 leaves the picture's values as they are, +1 doubles them",
+        "Exposure in stops: 0 is that of a sunny day, f/16 at 1/128 s and ISO 100; +1 is twice as bright",
         "0.0",
         "0 where nothing is set",
     )

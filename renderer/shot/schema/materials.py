@@ -74,7 +74,7 @@ class Material(Table):
     temperature: Annotated[Scalar, Number("degrees Celsius", Bounds(-100, 500))] = key(
         20.0, "Of water and sea water, whose index depends on it", "12.0"
     )
-    salinity: Annotated[Scalar | None, Number("per mille", Bounds(0, 45))] = key(
+    salinity: Annotated[Scalar | None, Number("per mille", Bounds(0, 42))] = key(
         None, "Of water and sea water", "35.0", "that of the material it is `like`"
     )
     refractive_index: RefractiveIndex | None = key(

@@ -71,7 +71,7 @@ def is_number(value: Any) -> bool:
     """Whether `value` is a finite number of TOML; true and false are none."""
     if isinstance(value, bool) or not isinstance(value, int | float):
         return False
-    return abs(value) <= LARGEST if isinstance(value, int) else math.isfinite(value)
+    return isinstance(value, int) or math.isfinite(value)
 
 
 @dataclass(frozen=True)
@@ -130,7 +130,8 @@ class NumberLeaf(Leaf):
         """One finite number inside the bounds; raises `Flawed`."""
         if is_number(value) and self.bounds.hold(value):
             return float(value) + 0.0  # no negative zero
-        raise Flawed(refusal(value, f"a number{self.tail()}", at))
+        huge = is_number(value) and abs(value) > LARGEST
+        raise Flawed(refusal(value, f"a number{self.tail()}{f', and at most {LARGEST:g}' if huge else ''}", at))
 
 
 def read_keys(table: dict[str, Any], leaf: NumberLeaf) -> Keys:

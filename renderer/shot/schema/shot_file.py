@@ -8,11 +8,13 @@ from typing import Annotated, Any, ClassVar
 
 from pydantic import Field
 
+from renderer.shot.keyed import Keys
 from renderer.shot.schema.camera import Camera
 from renderer.shot.schema.checks import Bow, Checks
 from renderer.shot.schema.flaws import Flaw, Flawed, refusal
 from renderer.shot.schema.leaves import Leaf, Text
 from renderer.shot.schema.materials import Material
+from renderer.shot.schema.matrices import each
 from renderer.shot.schema.names import repeated_names, unknown_materials
 from renderer.shot.schema.objects import Light, Object
 from renderer.shot.schema.render import Render
@@ -20,6 +22,7 @@ from renderer.shot.schema.sun_and_sky import Sky, Sun
 from renderer.shot.schema.table import Table, key
 from renderer.shot.schema.units import Frames, Units
 
+LOWEST_SUN_DEG = -12.0  # the end of nautical twilight, below which no published luminance of the sky is carried
 MOST_VARIANTS = 100  # each is checked with the whole shot
 MOST_OBJECTS = 65_535  # an object's number has 16 bits, and 0 stands for none
 
@@ -103,6 +106,17 @@ class ShotFile(Table):
             yield Flaw(("sky", "kind"), "a clear sky needs a sun", "a [sun] table, or another kind of sky")
 
     def agree(self) -> Iterator[Flaw]:
+        yield from self._sunk_sun()
         total = sum(len(item.placements or [0]) for item in (*self.objects, *self.lights))
         if total > MOST_OBJECTS - 1:
             yield Flaw(("objects",), f"the shot places {total:,} objects", f"at most {MOST_OBJECTS - 1:,}")
+
+    def _sunk_sun(self) -> Iterator[Flaw]:
+        """A sun so far down that no sky is known for it."""
+        height = self.sun.elevation if self.sun is not None else None
+        if self.sky.kind not in ("clear", "overcast") or height is None:
+            return
+        for path, numbers in each(("sun", "elevation"), height if isinstance(height, Keys) else (height,)):
+            if numbers[0] < LOWEST_SUN_DEG:
+                what = f"`{{key}}` is {numbers[0]:g}, and no {self.sky.kind} sky is known for so low a sun"
+                yield Flaw(path, what, f"{LOWEST_SUN_DEG:g} degrees or more, or another kind of sky")

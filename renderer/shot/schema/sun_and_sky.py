@@ -32,7 +32,7 @@ class Sun(Table):
         "In place of elevation and azimuth: from the shot towards the sun, in the shot's axes, of any length",
         "[0.4, 0.4, 0.8]",
     )
-    visibility: Annotated[Scalar, Number("km", Bounds(1, 300))] = key(
+    visibility: Annotated[Scalar, Number("km", Bounds(1, 330))] = key(
         23.0, "Meteorological visibility: how hazy the air is, for the sun and a clear sky", "23.0"
     )
 
@@ -52,7 +52,8 @@ class Sky(Table):
 
     kind: Annotated[str, Choice(KINDS)] = key(
         ...,
-        "clear and overcast (CIE S 011:2003 skies for this sun), uniform, picture (latitude-longitude), or none",
+        "clear or overcast, by the height of the sun; an overcast sky hides the disc, and needs no [sun]. uniform;"
+        " picture (latitude-longitude); or none",
         '"clear"',
     )
     luminance: Annotated[Scalar, Number("cd/m2", Bounds(0, 1e9))] = key(1000.0, "Of a uniform sky", "1000.0")

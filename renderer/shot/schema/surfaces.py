@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from itertools import pairwise
 from typing import Annotated, Any, ClassVar
 
 from renderer.shot.keyed import Scalar, Values
@@ -79,8 +80,8 @@ class Emission(Table):
     def agree(self) -> Iterator[Flaw]:
         if self.colour is not None:
             yield from black_flaws(("colour",), self.colour)
-        if self.spectrum is not None and not any(value for _, value in self.spectrum):
-            yield Flaw(("spectrum",), "`{key}` is black, which is no colour of a light", "at least one power above 0")
+        if self.spectrum is not None and not shines(self.spectrum):
+            yield Flaw(("spectrum",), "`{key}` has nothing visible in it", "a power above 0 between 380 and 780 nm")
         total = sum(share for _, share in self.lines)
         alone = self.colour is None and self.temperature is None and self.spectrum is None
         if self.lines and alone and abs(total - 1.0) > 1e-6:
@@ -91,3 +92,16 @@ class Emission(Table):
             )
         if self.lines and not alone and total > 1.0 + 1e-6:
             yield Flaw(("lines",), f"the shares of `{{key}}` add up to {total:.6g}", "shares that add up to 1 at most")
+
+
+def shines(pairs: tuple[tuple[float, float], ...]) -> bool:
+    """Whether straight lines through (nm, power) rise above 0 anywhere between 380 and 780 nm."""
+    return any(
+        (a[1] > 0.0 and 380.0 <= a[0] < 780.0) or (b[1] > 0.0 and 380.0 < b[0] <= 780.0) or _across(a, b)
+        for a, b in pairwise(pairs)
+    )
+
+
+def _across(a: tuple[float, float], b: tuple[float, float]) -> bool:
+    """Whether a line from outside reaches in: its lit end beyond one side, its other end not."""
+    return (a[1] > 0.0 and a[0] < 380.0 < b[0]) or (b[1] > 0.0 and a[0] < 780.0 < b[0])
