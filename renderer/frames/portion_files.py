@@ -202,7 +202,10 @@ def _header(file: BinaryIO) -> dict[str, Any]:
 def _arrays(file: BinaryIO, header: dict[str, Any]) -> Iterator[tuple[str, npt.NDArray[np.int64]]]:
     """Every array by name."""
     budget = MAX_VALUES
-    for entry in header.get("arrays", ()):
+    entries = header.get("arrays")
+    if not isinstance(entries, list):
+        raise Torn("has a header that cannot be read")
+    for entry in entries:
         try:
             name, shape = str(entry["name"]), tuple(int(side) for side in entry["shape"])
             lengths = [int(length) for length in entry["blocks"]]

@@ -1,12 +1,11 @@
 """Pictures on surfaces: read within limits, made linear, and turned into coefficients of reflectances.
 
-PNG, JPEG, TIFF, BMP and WebP have 8 bits a channel here (deeper ones are cut to that); EXR and Radiance HDR are floats.
+PNG, JPEG, TIFF, BMP and WebP have 8 bits a channel here, and deeper ones are refused; EXR and Radiance HDR are floats.
 Transparency is not read.
 """
 
 from __future__ import annotations
 
-import warnings
 from dataclasses import dataclass
 from pathlib import Path
 
@@ -69,33 +68,15 @@ def load_texture(path: Path, encoding: str, space: str) -> Texture:
 
 def byte_colours(path: Path, encoding: str) -> tuple[Floats, npt.NDArray[np.int64], tuple[int, int]]:
     """Distinct linear colours (k, 3), which one each texel has, and the picture's height and width."""
-    pixels = read_bytes(path)
+    from renderer.pictures.reading import read_8_bit
+
+    pixels = read_8_bit(path)
+    check_size(path, pixels.shape[1], pixels.shape[0])
     packed = pixels.reshape(-1, 3).astype(np.uint32)
     keys, which = np.unique((packed[:, 0] << 16) | (packed[:, 1] << 8) | packed[:, 2], return_inverse=True)
     levels = np.column_stack([keys >> 16, (keys >> 8) & 255, keys & 255])
     table = np.arange(256) / 255.0
     return (decoded(table) if encoding == "srgb" else table)[levels], which, pixels.shape[:2]
-
-
-def read_bytes(path: Path) -> npt.NDArray[np.uint8]:
-    """(height, width, 3) of an 8-bit picture."""
-    from PIL import Image
-
-    try:
-        with warnings.catch_warnings():
-            warnings.simplefilter("ignore")  # the size is checked here, by the header
-            with Image.open(path) as picture:
-                check_size(path, picture.width, picture.height)
-                return np.asarray(picture.convert("RGB"), dtype=np.uint8)
-    except InputError:
-        raise
-    except Image.DecompressionBombError as error:
-        raise refuse(path, "the picture has far too many pixels", f"1 to {MAX_TEXELS:,} in all") from error
-    except MemoryError as error:
-        raise refuse(path, "the picture is too large for this machine's memory") from error
-    except Exception as error:  # whatever the reader trips over, a person gets one sentence
-        text = (str(error).splitlines() or [type(error).__name__])[0][:120].replace(str(path), path.name)
-        raise refuse(path, f"the picture cannot be read ({text})", f"a whole {path.suffix[1:].upper()} file") from error
 
 
 def check_size(path: Path, width: int, height: int) -> None:

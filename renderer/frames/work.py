@@ -87,5 +87,7 @@ class Rounds:
             on_rows(number, row)
         if tally["non_finite"]:
             n = tally["non_finite"]
-            raise FrameFailed(f"{n:,} {'sample' if n == 1 else 'samples'} of round {number} are not finite numbers")
+            samples = "1 sample" if n == 1 else f"{n:,} samples"
+            numbers = "is not a finite number" if n == 1 else "are not finite numbers"
+            raise FrameFailed(f"{samples} of round {number} {numbers}")
         return tally
