@@ -70,8 +70,7 @@ def byte_colours(path: Path, encoding: str) -> tuple[Floats, npt.NDArray[np.int6
     """Distinct linear colours (k, 3), which one each texel has, and the picture's height and width."""
     from renderer.pictures.reading import read_8_bit
 
-    pixels = read_8_bit(path)
-    check_size(path, pixels.shape[1], pixels.shape[0])
+    pixels = read_8_bit(path, MAX_TEXELS)
     packed = pixels.reshape(-1, 3).astype(np.uint32)
     keys, which = np.unique((packed[:, 0] << 16) | (packed[:, 1] << 8) | packed[:, 2], return_inverse=True)
     levels = np.column_stack([keys >> 16, (keys >> 8) & 255, keys & 255])

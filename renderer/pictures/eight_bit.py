@@ -11,6 +11,7 @@ import numpy.typing as npt
 
 from renderer.base.errors import InputError
 from renderer.pictures.faults import check_file, check_size, refused
+from renderer.pictures.limits import MAX_8_BIT_PIXELS
 
 if TYPE_CHECKING:
     from PIL import Image
@@ -29,7 +30,7 @@ EXPECTED = "a picture of 8 bits a channel, or an OpenEXR picture"
 PNG_DEPTH_AT = 24  # byte of a PNG file that states the bits a channel (ISO/IEC 15948:2004, 11.2.2)
 
 
-def read_pixels(path: Path) -> npt.NDArray[np.uint8]:
+def read_pixels(path: Path, most_pixels: int = MAX_8_BIT_PIXELS) -> npt.NDArray[np.uint8]:
     """(rows, columns, 3) display values. Raises `InputError` for whatever cannot be read as such."""
     kind = path.suffix.lower()
     if kind not in KINDS:
@@ -42,17 +43,19 @@ def read_pixels(path: Path) -> npt.NDArray[np.uint8]:
         with warnings.catch_warnings():
             warnings.simplefilter("ignore")  # the library's own limit is lower than ours
             with Image.open(path, formats=tuple(sorted(set(KINDS.values())))) as picture:
-                check_size(path, picture.width, picture.height)
+                check_size(path, picture.width, picture.height, most_pixels)
                 _check_mode(path, picture)
                 return np.asarray(picture.convert("RGB"), dtype=np.uint8)
     except InputError:
         raise
     except UnidentifiedImageError:
-        raise refused(path, f"the file is no {KINDS[kind]} picture, whatever its name says", EXPECTED) from None
+        raise refused(path, f"the file cannot be read as {KINDS[kind]}, whatever its name says", EXPECTED) from None
+    except Image.DecompressionBombError:
+        raise refused(path, "the picture has far too many pixels", f"1 to {most_pixels:,} in all") from None
     except MemoryError:
         raise refused(path, "the picture does not fit this machine's memory", "a smaller picture") from None
     except Exception as error:  # whatever the library trips over in a hostile file, a person gets one sentence
-        raise refused(path, f"the picture is damaged or cut short ({_reason(path, error)})", EXPECTED) from None
+        raise refused(path, f"the picture cannot be read ({_reason(path, error)})", EXPECTED) from None
 
 
 def _check_depth(path: Path) -> None:

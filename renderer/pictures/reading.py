@@ -8,6 +8,7 @@ import numpy as np
 import numpy.typing as npt
 
 from renderer.pictures.faults import refused
+from renderer.pictures.limits import MAX_8_BIT_PIXELS
 
 Floats = npt.NDArray[np.float64]
 
@@ -60,7 +61,7 @@ def check_finite(path: Path, values: Floats) -> None:
         raise refused(path, f"{pixels} not a finite number, first at column {column}, row {row}", "finite numbers")
 
 
-def read_8_bit(path: Path) -> npt.NDArray[np.uint8]:
+def read_8_bit(path: Path, most_pixels: int = MAX_8_BIT_PIXELS) -> npt.NDArray[np.uint8]:
     """Display values (rows, columns, 3) of a PNG, JPEG, TIFF, BMP or WebP picture of 8 bits a channel.
 
     Transparency is left aside. Raises `InputError` when the file is missing, damaged, cut short, beyond a limit, for
@@ -68,4 +69,4 @@ def read_8_bit(path: Path) -> npt.NDArray[np.uint8]:
     """
     from renderer.pictures.eight_bit import read_pixels
 
-    return read_pixels(path)
+    return read_pixels(path, most_pixels)
