@@ -20,6 +20,8 @@ if TYPE_CHECKING:
 Floats = npt.NDArray[np.float64]
 Key = tuple[object, ...]
 
+MOST_BOUNDS = 100_000  # objects whose placed bounds are kept; one that moves is another object in every frame
+
 
 class Facts:
     """A memory for one check. Meshes are known by the content of their files, so that a copy costs nothing."""
@@ -27,6 +29,7 @@ class Facts:
     def __init__(self) -> None:
         self._contents: dict[Path, str] = {}
         self._meshes: dict[Key, MeshReport] = {}
+        self._bounds: dict[int, tuple[Object, tuple[Floats, Floats]]] = {}
         self._facings: dict[Key, Floats] = {}
         self._fits: dict[Key, Fit | None] = {}
         self._indices: dict[Key, tuple[float, float]] = {}
@@ -58,6 +61,16 @@ class Facts:
         if key not in self._meshes:
             self._meshes[key] = _inspect(item)
         return self._meshes[key]
+
+    def world_bounds(self, item: Object) -> tuple[Floats, Floats]:
+        """Low and high corner of an object's bounding box as placed. [m]"""
+        known = self._bounds.get(id(item))
+        if known is None or known[0] is not item:
+            if len(self._bounds) > MOST_BOUNDS:
+                self._bounds.clear()
+            known = (item, _placed_bounds(self.mesh(item), item.matrices[0]))
+            self._bounds[id(item)] = known
+        return known[1]
 
     def facing(self, item: Object) -> Vector:
         """The sum of an object's faces as vectors of area along their normals, as placed: where a sheet faces. [m2]"""
@@ -103,6 +116,13 @@ def assets(item: Object) -> list[TriangleAsset | SphereAsset]:
 
     assert item.shape is not None
     return list(build_shape(item.shape).assets)
+
+
+def _placed_bounds(report: MeshReport, matrix: Floats) -> tuple[Floats, Floats]:
+    sides = np.array([report.low_m, report.high_m])
+    corners = np.array([[sides[i, 0], sides[j, 1], sides[k, 2]] for i in (0, 1) for j in (0, 1) for k in (0, 1)])
+    placed = corners @ matrix[:, :3].T + matrix[:, 3]
+    return placed.min(axis=0), placed.max(axis=0)
 
 
 def _inspect(item: Object) -> MeshReport:

@@ -8,7 +8,7 @@ import numpy as np
 
 from renderer.checks.facts import Facts
 from renderer.checks.findings import ADVICE, Finding, Fix
-from renderer.checks.mesh_gap import scale_of, world_bounds
+from renderer.checks.mesh_gap import scale_of
 from renderer.checks.view import FrameView
 from renderer.shot.model import Object
 from renderer.transport.layout import SMOOTH_BELOW
@@ -59,7 +59,7 @@ def _sharp_lights(view: FrameView, facts: Facts) -> list[str]:
     if lamps:
         from renderer.frames.scene_lights import SMALL
 
-        corners = np.concatenate([np.stack(world_bounds(item, facts)) for item in view.shot.objects])
+        corners = np.concatenate([np.stack(facts.world_bounds(item)) for item in view.shot.objects])
         square_m2 = float(np.square(np.ptp(corners, axis=0)).sum())
         areas = [(item, facts.mesh(item).area_m2 * scale_of(item) ** 2) for item in lamps]
         found += [item.name for item, area_m2 in areas if area_m2 < SMALL * square_m2]

@@ -3,10 +3,8 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from itertools import permutations
 
 import numpy as np
-import numpy.typing as npt
 
 from renderer.checks.facts import Facts
 from renderer.checks.findings import IMPLAUSIBLE, Finding, Fix
@@ -14,8 +12,6 @@ from renderer.checks.gap_measure import Fit
 from renderer.checks.keys import object_key
 from renderer.checks.view import FrameView
 from renderer.shot.model import Object
-
-Floats = npt.NDArray[np.float64]
 
 FILM_SHARE = 0.01  # of the filling's surface: less is a corner cut by coarse faces
 FILLING_SHARE = 0.25  # of the filling's surface must have to do with the vessel, or it only stands in it
@@ -28,12 +24,8 @@ SOURCE_OVERLAP = "J. Schmidt and B. Budge, J. Graphics Tools 7(3), 2002"
 
 def check_gap(view: FrameView, facts: Facts) -> Iterator[Finding]:
     """Findings for fillings with air between them and their vessel, or that cut into its wall."""
-    closed = [item for item in view.shot.objects if item.role == "solid" and facts.mesh(item).watertight]
-    bounds = {id(item): world_bounds(item, facts) for item in closed}
     order = {id(item): place for place, item in enumerate(view.shot.objects)}
-    for vessel, filling in permutations(closed, 2):
-        if _same_material(vessel, filling) or not _within(bounds[id(filling)], bounds[id(vessel)]):
-            continue
+    for vessel, filling in nested_pairs(view, facts):
         fit = facts.fit(vessel, filling)
         if fit is None or fit.near_share < FILLING_SHARE:
             continue
@@ -44,22 +36,19 @@ def check_gap(view: FrameView, facts: Facts) -> Iterator[Finding]:
             yield _cuts_in(vessel, filling, fit)
 
 
-def world_bounds(item: Object, facts: Facts) -> tuple[Floats, Floats]:
-    """Low and high corner of an object's bounding box as placed. [m]"""
-    report, matrix = facts.mesh(item), item.matrices[0]
-    sides = np.array([report.low_m, report.high_m])
-    corners = np.array([[sides[i, 0], sides[j, 1], sides[k, 2]] for i in (0, 1) for j in (0, 1) for k in (0, 1)])
-    placed = corners @ matrix[:, :3].T + matrix[:, 3]
-    return placed.min(axis=0), placed.max(axis=0)
-
-
-def _within(inner: tuple[Floats, Floats], outer: tuple[Floats, Floats]) -> bool:
-    slack = VESSEL_MARGIN * float(np.linalg.norm(outer[1] - outer[0]))
-    return bool((inner[0] >= outer[0] - slack).all() and (inner[1] <= outer[1] + slack).all())
-
-
-def _same_material(a: Object, b: Object) -> bool:
-    return a.material is not None and b.material is not None and a.material == b.material
+def nested_pairs(view: FrameView, facts: Facts) -> Iterator[tuple[Object, Object]]:
+    """Closed solids of different materials, of which one's bounds hold the other's: (outer, inner)."""
+    closed = [item for item in view.shot.objects if item.role == "solid" and facts.mesh(item).watertight]
+    if len(closed) < 2:
+        return
+    bounds = np.array([facts.world_bounds(item) for item in closed])
+    slack = VESSEL_MARGIN * np.linalg.norm(bounds[:, 1] - bounds[:, 0], axis=1)
+    for place, vessel in enumerate(closed):
+        low, high = bounds[place]
+        within = (bounds[:, 0] >= low - slack[place]).all(axis=1) & (bounds[:, 1] <= high + slack[place]).all(axis=1)
+        for other in np.flatnonzero(within):
+            if other != place and closed[other].material != vessel.material:
+                yield vessel, closed[other]
 
 
 def _film(vessel: Object, filling: Object, fit: Fit) -> Finding:

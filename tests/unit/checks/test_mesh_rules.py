@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import time
 from dataclasses import replace
 from pathlib import Path
 
@@ -217,6 +218,19 @@ def test_a_fit_is_measured_once_for_all_frames(monkeypatch: pytest.MonkeyPatch) 
         for rule in (check_gap, check_watertight, check_scale):
             list(rule(FrameView(build.frame(k, objects=(tank(priority=1), filling(0.001)))), facts))
     assert len(calls) == 1
+
+
+def test_a_shelf_of_glasses_takes_no_time() -> None:
+    """A thousand tumblers of one material beside each other have nothing in each other."""
+    glass = build.glass()
+    shelf = []
+    for k in range(1000):
+        matrices = np.eye(3, 4)[None].copy()
+        matrices[0, :, 3] = (0.2 * (k % 40), 0.0, 0.2 * (k // 40))
+        shelf.append(replace(build.shape_object(f"tumbler[{k}]", material=glass), matrices=matrices))
+    start = time.process_time()
+    assert ask(check_gap, *shelf) == []
+    assert time.process_time() - start < 2.0
 
 
 def test_samples_lie_on_the_surface_and_rays_find_it() -> None:
