@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import itertools
 import re
 from collections.abc import Callable, Iterable
 from typing import Any
@@ -10,6 +11,7 @@ from renderer.base.errors import Fault
 from renderer.shot.positions import Place, positions
 from renderer.shot.schema.flaws import KEY, Flaw, Path, clean
 
+MOST_PLACED = 5_000  # that are looked for in the file
 MOST_FAULTS = 100  # that are listed; the rest is counted
 
 _BARE = re.compile(r"[A-Za-z0-9_-]+", re.ASCII)
@@ -43,7 +45,7 @@ def faults_of(flaws: Iterable[Flaw], text: str, file: str, tables: dict[str, Any
     """Faults in the order of the file, each once; what a variant or override caused is said to be there."""
     places = positions(text)
     found: dict[Fault, tuple[int, int]] = {}
-    for flaw in flaws:
+    for flaw in itertools.islice(flaws, MOST_PLACED):
         fault, place = _fault(flaw, places, file, tables, origin)
         found.setdefault(fault, place)
     ordered = sorted(found, key=lambda fault: found[fault])

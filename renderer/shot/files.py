@@ -66,7 +66,13 @@ class Files:
                 return Flaw((), f"`{KEY}` leads out of the shot's folder through a symbolic link", expected)
             if os.path.isfile(real):
                 return path
-            what = "is a folder" if os.path.isdir(real) else "does not exist"
+            what = (
+                "is a folder"
+                if os.path.isdir(real)
+                else "is no plain file"
+                if os.path.exists(real)
+                else "does not exist"
+            )
         except (OSError, ValueError):
             what = "cannot be looked up"
         return Flaw(

@@ -20,7 +20,7 @@ from renderer.shot.schema.flaws import Flaw, clean, nearest
 from renderer.shot.schema.flaws import Path as KeyPath
 from renderer.shot.schema.leaves import FileName
 from renderer.shot.schema.shot_file import ShotFile
-from renderer.shot.schema.table import find
+from renderer.shot.schema.table import find, remembering
 from renderer.shot.shot import Shot
 from renderer.shot.walk import changes_by_frame, leaves
 
@@ -46,8 +46,13 @@ def load_shot(
         With everything that is wrong with the file, its variants and the overrides, each with its line.
     """
     file = Path(path)
+    with remembering():
+        return _load(file, variant, overrides, [Path(root) for root in roots])
+
+
+def _load(file: Path, variant: str | None, overrides: Sequence[str], roots: Sequence[Path]) -> Shot:
     text, tables = read_tables(file)
-    source = _Source(file, text, tables, Files(file.parent, [Path(root) for root in roots]))
+    source = _Source(file, text, tables, Files(file.parent, roots))
     chosen = source.check_variants(variant)
     given = parse_overrides(overrides)
     shot, flaws, landed = source.read([*chosen, *given])
@@ -95,6 +100,7 @@ class _Source:
         variants = self.tables.get("variants", {})
         variants = variants if isinstance(variants, dict) else {}
         found: list[Override] = []
+        known = set(flaws)
         faults = list(self.faults(flaws, []))
         for name, changes in variants.items():
             if not isinstance(changes, dict):
@@ -103,7 +109,7 @@ class _Source:
             wrong = [item for item in items if isinstance(item, Flaw)]
             right = [item for item in items if isinstance(item, Override)]
             _, more, landed = self.read(right)
-            faults += self.faults([*wrong, *(flaw for flaw in more if flaw not in flaws)], landed)
+            faults += self.faults([*wrong, *(flaw for flaw in more if flaw not in known)], landed)
             found = right if name == chosen else found
         if faults:
             raise InputError(*dict.fromkeys(faults))

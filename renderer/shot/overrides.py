@@ -143,8 +143,12 @@ def flattened(changes: Mapping[str, Any], at: tuple[str, ...] = ()) -> Iterator[
 def apply(
     tables: dict[str, Any], overrides: Iterable[Override]
 ) -> tuple[dict[str, Any], list[tuple[Path, Override]], list[Flaw]]:
-    """The tables with the overrides laid over, where each landed, and what could not be laid."""
-    changed = copy.deepcopy(tables)
+    """The tables with the overrides laid over, where each landed, and what could not be laid.
+
+    Only what an override passes through is copied; the rest is shared with `tables`, and is known by its identity to
+    have been read already.
+    """
+    changed = dict(tables)
     landed: list[tuple[Path, Override]] = []
     flaws: list[Flaw] = []
     for override in overrides:
@@ -167,7 +171,7 @@ def _lay(tables: dict[str, Any], override: Override) -> Path:
     last = override.path[-1]
     if isinstance(place, list):
         index = _row(place, path, last)
-        place[index] = copy.deepcopy(override.value)
+        place[index] = override.value
         return (*path, index)
     if not isinstance(place, dict) or isinstance(last, int):
         raise Flawed(Flaw((*path, last), "`{key}` is no place in a list or a table", "a key of the shot file"))
@@ -175,7 +179,7 @@ def _lay(tables: dict[str, Any], override: Override) -> Path:
     for alternatives in table.ONE_OF if table is not None else ():
         for other in alternatives.excluded_by(last):
             place.pop(other, None)
-    place[last] = copy.deepcopy(override.value)
+    place[last] = override.value
     return (*path, last)
 
 
@@ -183,6 +187,7 @@ def _enter(place: Any, path: Path, part: str | int) -> tuple[Any, Path]:
     """One step down; a table that is not there yet is made, and one that is written in short is written out."""
     if isinstance(place, list):
         index = _row(place, path, part)
+        place[index] = copy.copy(place[index])
         return place[index], (*path, index)
     if not isinstance(place, dict) or isinstance(part, int):
         raise Flawed(Flaw((*path, part), "`{key}` is no place in a list or a table", "a key of the shot file"))
@@ -196,6 +201,7 @@ def _enter(place: Any, path: Path, part: str | int) -> tuple[Any, Path]:
     table = table_at(ShotFile, below)
     if table is not None and not isinstance(place[part], dict):
         place[part] = table.shorthand(place[part])
+    place[part] = copy.copy(place[part])
     return place[part], below
 
 

@@ -2,19 +2,27 @@
 
 from __future__ import annotations
 
+import itertools
 from collections.abc import Iterator
-from functools import cache
 from typing import Any
 
 from renderer.shot.schema.flaws import Flaw, Path, clean, nearest
 
+MOST_OWN = 100  # of the shot's own materials that a nearest name is looked for among
 
-@cache
+
 def library_names() -> tuple[str, ...]:
-    """The names of the library of materials."""
-    from renderer.optics.materials import material_names
+    """The names of the library of materials, and the other names that they go by."""
+    from renderer.optics.library import accepted_names
 
-    return tuple(material_names())
+    return accepted_names()
+
+
+def in_library(name: str) -> bool:
+    """Whether the library has a material of that name, in capitals or not."""
+    from renderer.optics.library import known_names
+
+    return name.strip().lower() in known_names()
 
 
 def rows(table: dict[str, Any], name: str) -> Iterator[tuple[int, dict[str, Any]]]:
@@ -48,11 +56,11 @@ def unknown_materials(shot: dict[str, Any]) -> Iterator[Flaw]:
     own = own if isinstance(own, dict) else {}
     for name, material in own.items():
         like = material.get("like") if isinstance(material, dict) else None
-        if isinstance(like, str) and like not in library_names():
+        if isinstance(like, str) and not in_library(like):
             yield _unknown(("materials", name, "like"), like, library_names(), 'a name from "antisolar materials"')
-    known = (*own, *library_names()) if any(True for _ in _references(shot)) else ()
     for at, name in _references(shot):
-        if name not in known:
+        if name not in own and not in_library(name):
+            known = (*itertools.islice(own, MOST_OWN), *library_names())
             yield _unknown(at, name, known, 'a name from [materials] or from "antisolar materials"')
 
 

@@ -13,6 +13,7 @@ from renderer.shot.schema.leaves import Leaf
 
 LARGEST = 1e12  # beyond any shot in any unit, and far from overflow
 MOST_KEYS = 100_000
+MOST_TOLD = 50  # wrong keys of one value that are told
 EASE = "ease"
 _FRAME = re.compile(r"-?\d{1,8}", re.ASCII)
 
@@ -137,6 +138,8 @@ class NumberLeaf(Leaf):
 def read_keys(table: dict[str, Any], leaf: NumberLeaf) -> Keys:
     """A keyed value, ``{ 1001 = 12.0, 1048 = 14.5, ease = true }``; raises `Flawed` with all that is wrong."""
     flaws: list[Flaw] = []
+    if len(table) > MOST_KEYS:
+        raise Flawed(Flaw((), f"`{{key}}` has {len(table):,} keys", f"at most {MOST_KEYS:,} keys"))
     ease = table.get(EASE, False)
     if not isinstance(ease, bool):
         flaws.append(refusal(ease, "true or false", (EASE,)))
@@ -144,6 +147,8 @@ def read_keys(table: dict[str, Any], leaf: NumberLeaf) -> Keys:
     for name, value in table.items():
         if name == EASE:
             continue
+        if len(flaws) >= MOST_TOLD:
+            break
         frame = _frame(name, keys, flaws)
         try:
             keys[frame] = leaf.still(value)
@@ -153,8 +158,6 @@ def read_keys(table: dict[str, Any], leaf: NumberLeaf) -> Keys:
         flaws.append(
             Flaw((), "`{key}` has no keys", f"frames and values, as in {{ 1001 = ..., 1048 = ... }}: {leaf.expects()}")
         )
-    if len(keys) > MOST_KEYS:
-        flaws.append(Flaw((), f"`{{key}}` has {len(keys):,} keys", f"at most {MOST_KEYS:,} keys"))
     if flaws:
         raise Flawed(*flaws)
     frames = tuple(sorted(keys))

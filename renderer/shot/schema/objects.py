@@ -72,6 +72,12 @@ class Placed(Table):
         "one",
     )
 
+    @property
+    def filled(self) -> bool:
+        """Whether something stands in it, which is an object of its own."""
+        vessel = self.shape.vessel if self.shape is not None else None
+        return vessel is not None and vessel.filling is not None
+
     FORM: ClassVar = OneOf((("mesh",), ("shape",)))
 
     @classmethod

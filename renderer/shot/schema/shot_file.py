@@ -107,7 +107,7 @@ class ShotFile(Table):
 
     def agree(self) -> Iterator[Flaw]:
         yield from self._sunk_sun()
-        total = sum(len(item.placements or [0]) for item in (*self.objects, *self.lights))
+        total = sum(len(item.placements or [0]) * (1 + item.filled) for item in (*self.objects, *self.lights))
         if total > MOST_OBJECTS - 1:
             yield Flaw(("objects",), f"the shot places {total:,} objects", f"at most {MOST_OBJECTS - 1:,}")
 

@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from contextlib import contextmanager
+from contextvars import ContextVar
 from dataclasses import dataclass
 from typing import Any, ClassVar, Self, cast, get_origin
 
@@ -13,7 +15,24 @@ from pydantic_core import PydanticCustomError
 from renderer.shot.schema.flaws import Flaw, Path, below, clean, listed, nearest, refusal
 from renderer.shot.schema.leaves import Leaf
 
+MOST_STRANGE = 50  # unknown keys of one table that are named
 UNIT_ENDINGS = ("_mm", "_cm", "_m", "_km", "_ft", "_in", "_nm", "_deg", "_degrees", "_k", "_c", "_s")
+
+
+_remembered: ContextVar[dict[tuple[type, int], tuple[Any, Table]] | None] = ContextVar("remembered", default=None)
+
+
+@contextmanager
+def remembering() -> Iterator[None]:
+    """While this lasts, the same table of a file is read once, however many variants hold it.
+
+    A table is known by its identity; it is held on to, so that no other can take its address.
+    """
+    token = _remembered.set({})
+    try:
+        yield
+    finally:
+        _remembered.reset(token)
 
 
 @dataclass(frozen=True)
@@ -128,11 +147,26 @@ class Table(BaseModel):
     def _read(cls, value: Any, handler: ValidatorFunctionWrapHandler) -> Self:
         if isinstance(value, cls):
             return value
+        remembered = _remembered.get()
+        if remembered is not None and (cls, id(value)) in remembered:
+            return remembered[cls, id(value)][1]  # type: ignore[return-value]
         table = cls.shorthand(value)
         if not isinstance(table, dict):
             raise _custom([refusal(value, cls.NOUN)])
+        model = cls._checked(table, handler)
+        if remembered is not None:
+            remembered[cls, id(value)] = (value, model)
+        return model
+
+    @classmethod
+    def _checked(cls, table: dict[str, Any], handler: ValidatorFunctionWrapHandler) -> Self:
+        """The table read, or everything that is wrong with it."""
         known = cls.keys()
-        strange = {name: cls._unknown(name, known) for name in table if name not in known}
+        names = [name for name in table if name not in known]
+        strange = {name: cls._unknown(name, known) for name in names[:MOST_STRANGE]}
+        if len(names) > MOST_STRANGE:
+            more = Flaw((names[MOST_STRANGE],), f"and {len(names) - MOST_STRANGE:,} more keys are not known", "")
+            strange[names[MOST_STRANGE]] = more
         given = {name: entry for name, entry in table.items() if name in known}
         meant = {flaw.nearest: table[name] for name, flaw in strange.items() if flaw.nearest} | given
         later = any(name in cls.LATER for name in strange)

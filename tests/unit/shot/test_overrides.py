@@ -166,5 +166,17 @@ def test_the_command_line_is_laid_over_the_variant(tmp_path: Path) -> None:
     assert found.sun.elevation_deg == 50.0
 
 
+def test_a_variant_leaves_the_file_and_other_variants_as_they_are(tmp_path: Path) -> None:
+    """Tables that no override touches are shared between variants; those that one touches must not be."""
+    text = VARIANTS + '[variants.more]\n"objects.ball.shape.sphere" = 9\n"objects[1].transform.scale" = 2\n'
+    for name in (None, "quoted", "more", None):
+        first, second = shots.frame(tmp_path, text, variant=name).objects
+        assert first.shape is not None
+        assert first.shape.sizes == {"radius": 9.0 if name == "more" else 0.1}
+        assert second.matrices[0, 0, 0] == (2.0 if name == "more" else 1.0)
+        assert first.material is not None
+        assert first.material.name == ("ice" if name == "quoted" else "water")
+
+
 def test_variants_are_listed(tmp_path: Path) -> None:
     assert shots.read(tmp_path, VARIANTS).variants == ("quoted", "bare", "tables")

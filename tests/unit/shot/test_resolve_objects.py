@@ -158,6 +158,12 @@ def test_materials_of_the_shot(tmp_path: Path) -> None:
     ]
 
 
+def test_library_materials_by_any_of_their_names(tmp_path: Path) -> None:
+    found = objects(tmp_path, shots.ball().replace('"water"', '"Soda-Lime Glass"'))
+    assert found[0].material is not None
+    assert found[0].material.like == "Soda-Lime Glass"
+
+
 def test_lights(tmp_path: Path) -> None:
     head = '[[lights]]\nname = "lamp"\nshape = { disc = 0.1 }\nluminance = { 1001 = 0, 1003 = 200 }\n'
     for line, expected in (

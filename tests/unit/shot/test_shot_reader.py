@@ -76,11 +76,26 @@ def test_hostile_keys_are_not_repeated_as_they_are(tmp_path: Path, text: str) ->
     assert max(len(line.replace(str(tmp_path), "")) for line in message.split("\n")) < 250
 
 
-def test_a_hundred_faults_and_a_count(tmp_path: Path) -> None:
+def test_fifty_unknown_keys_and_a_count(tmp_path: Path) -> None:
     with pytest.raises(InputError) as caught:
         shots.read(tmp_path, "".join(f"key{number} = 1\n" for number in range(150)))
+    assert len(caught.value.faults) == 51
+    assert caught.value.faults[-1].what == "and 100 more keys are not known"
+    assert caught.value.faults[-1].where.endswith(":56:1  camera.key50")
+
+
+def test_a_hundred_faults_and_a_count(tmp_path: Path) -> None:
+    with pytest.raises(InputError) as caught:
+        shots.read(tmp_path, "".join(shots.ball("roughness = 2", f"ball {number}") for number in range(150)))
     assert len(caught.value.faults) == 101
     assert caught.value.faults[-1].what == "and 50 more errors"
+
+
+def test_fifty_wrong_keys_of_a_value_are_enough(tmp_path: Path) -> None:
+    keys = ", ".join(f"{number} = 100" for number in range(1000))
+    with pytest.raises(InputError) as caught:
+        shots.read(tmp_path, f"[sun]\nazimuth = 0\nelevation = {{ {keys} }}\n")
+    assert len(caught.value.faults) == 50
 
 
 TEXT = """\
