@@ -32,18 +32,18 @@ def check_centre(view: FrameView, facts: object) -> Iterator[Finding]:
 
 def _off_centre(view: FrameView, bow: BowToCheck, centre: Vector, belongs: Vector, error_deg: float) -> Finding:
     severity = IMPOSSIBLE if error_deg > SURE_DEG else IMPLAUSIBLE
-    why = WHY
+    title, why = TITLE, WHY
     if bow.order in AROUND_SUN:
         why = "Bows of the third and fourth order lie around the sun itself."
     elif _is_reflected_light(view, centre):
-        severity = ADVICE
+        severity, title = ADVICE, "Bow centre, of a reflected-light bow"
         why = (
             "This is the centre of a reflected-light bow, which needs calm water that mirrors the sun towards the "
             "rain; the ordinary bow's is twice the sun's height lower."
         )
     return Finding(
         rule=RULE,
-        title=TITLE,
+        title=title,
         severity=severity,
         subject=bow.name,
         measured=round(error_deg, 2),

@@ -5,14 +5,14 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import replace
 
-from renderer.checks.findings import Finding
+from renderer.checks.findings import SEVERITIES, Finding
 
 
 def merge_frames(by_frame: Sequence[tuple[int, Sequence[Finding]]]) -> list[Finding]:
     """Findings of single frames, in order, as findings of stretches of frames.
 
-    Two findings are the same when rule, subject, severity, title and sign-off agree and their frames follow each other
-    in the list that was checked. The worst frame's measurement and fix are kept.
+    Two findings are the same when rule, subject, title and sign-off agree and their frames follow each other in the
+    list that was checked. The worst frame's severity, measurement and fix are kept.
     """
     runs: list[list[Finding]] = []
     running: dict[tuple[object, ...], list[Finding]] = {}
@@ -27,13 +27,18 @@ def merge_frames(by_frame: Sequence[tuple[int, Sequence[Finding]]]) -> list[Find
             run.append(replace(finding, frames=(frame,)))
             still[key] = run
         running = still
-    merged = [_join(run) for run in runs]
-    return sorted(merged, key=lambda finding: (finding.frames[0], finding.rule, finding.subject))
+    return [_join(run) for run in runs]
+
+
+def by_weight(finding: Finding) -> tuple[bool, int, int, str, str]:
+    """What puts findings in order: those that still stand first, the gravest of them first, then by frame and name."""
+    first = finding.frames[0] if finding.frames else 0
+    return not finding.flagged, -SEVERITIES.index(finding.severity), first, finding.rule, finding.subject
 
 
 def _key(finding: Finding, taken: dict[tuple[object, ...], list[Finding]]) -> tuple[object, ...]:
     """What makes findings of two frames the same; a counter keeps apart two such findings of one frame."""
-    base = (finding.rule, finding.subject, finding.severity, finding.title, finding.signed_off)
+    base = (finding.rule, finding.subject, finding.title, finding.signed_off)
     count = 0
     while (*base, count) in taken:
         count += 1
@@ -42,7 +47,7 @@ def _key(finding: Finding, taken: dict[tuple[object, ...], list[Finding]]) -> tu
 
 def _join(run: Sequence[Finding]) -> Finding:
     """The findings of a stretch as one: the worst, named as such unless it is the same in every frame."""
-    worst = max(run, key=lambda finding: finding.excess)  # the first of equals
+    worst = max(run, key=lambda finding: (SEVERITIES.index(finding.severity), finding.excess))  # the first of equals
     alike = all(finding.excess == worst.excess for finding in run)
     frame = worst.worst_frame if worst.worst_frame is not None or alike else worst.frames[0]
     return replace(worst, frames=tuple(finding.frames[0] for finding in run), worst_frame=frame)

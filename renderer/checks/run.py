@@ -10,7 +10,7 @@ from dataclasses import dataclass, replace
 from renderer.checks.expected import FrameBows, bows_of_frame
 from renderer.checks.facts import Facts
 from renderer.checks.findings import ADVICE, Finding, Fix, fails
-from renderer.checks.merging import merge_frames
+from renderer.checks.merging import by_weight, merge_frames
 from renderer.checks.registry import FRAME, FRAMES, Rule, RuleFunction, function_of, rules
 from renderer.checks.sign_off import SignOffs
 from renderer.checks.view import FrameView
@@ -62,7 +62,7 @@ def check_shot(
         variant=first.variant,
         frames=checked,
         pixels=first.camera.pixels,
-        findings=tuple(findings),
+        findings=tuple(sorted(findings, key=by_weight)),
         bows=tuple(bows_of_frame(view) for view in views),
     )
 

@@ -64,9 +64,17 @@ def test_neighbouring_frames_merge_and_keep_the_worst() -> None:
     assert (second.frames, second.worst_frame) == ((1004,), None)
 
 
-def test_different_bows_and_severities_do_not_merge() -> None:
+def test_different_bows_do_not_merge_and_the_gravest_severity_is_kept() -> None:
     rows = [(1, [finding(subject="a"), finding(subject="b")]), (2, [finding(IMPLAUSIBLE, "a"), finding(subject="b")])]
-    assert sorted(found.subject for found in merge_frames(rows)) == ["a", "a", "b"]
+    assert [(found.subject, found.severity) for found in merge_frames(rows)] == [("a", IMPOSSIBLE), ("b", IMPOSSIBLE)]
+
+
+def test_the_gravest_come_first_and_what_is_signed_off_last() -> None:
+    centre = sphere.on_circle(GOOD, 5.0, 0.0, build.AXES)
+    bows = (build.bow(centre, 40.3), build.bow(GOOD, outer="violet", name="other"))
+    signed = SignOff("bow.colour-order", "meant", None, None, None)
+    report = check_shot([build.frame(sun=SUN, bows=bows, sign_offs=(signed,))], TODAY)
+    assert [found.rule for found in report.findings] == ["bow.centre", "bow.radius", "bow.colour-order"]
 
 
 def test_a_wrong_bow_is_one_finding_over_its_frames() -> None:
