@@ -8,7 +8,7 @@ from collections.abc import Callable, Iterable
 from typing import Any
 
 from renderer.base.errors import Fault
-from renderer.shot.positions import Place, positions
+from renderer.shot.positions import Place, Places, positions
 from renderer.shot.schema.flaws import KEY, Flaw, Path, clean
 
 MOST_PLACED = 5_000  # that are looked for in the file
@@ -55,9 +55,7 @@ def faults_of(flaws: Iterable[Flaw], text: str, file: str, tables: dict[str, Any
     return tuple(ordered)
 
 
-def _fault(
-    flaw: Flaw, places: dict[Path, Place], file: str, tables: dict[str, Any], origin: Origin
-) -> tuple[Fault, Place]:
+def _fault(flaw: Flaw, places: Places, file: str, tables: dict[str, Any], origin: Origin) -> tuple[Fault, Place]:
     at = as_written(flaw.at, tables)
     what = flaw.what.replace(KEY, short(at))
     caused = origin(at)
@@ -69,11 +67,11 @@ def _fault(
     return Fault(what, f"{file}:{place[0]}:{place[1]}{tail}", flaw.expected, flaw.nearest), place
 
 
-def place_of(path: Path, places: dict[Path, Place]) -> Place:
+def place_of(path: Path, places: Places) -> Place:
     """Where a key stands, or the nearest table round it."""
     while path and path not in places:
         path = path[:-1]
-    return places.get(path, (1, 1))
+    return places[path] if path else (1, 1)
 
 
 def as_written(path: Path, tables: Any) -> Path:

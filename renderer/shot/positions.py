@@ -9,24 +9,39 @@ from renderer.shot.schema.flaws import Path
 Place = tuple[int, int]  # line and column, from 1
 
 
-def positions(text: str) -> dict[Path, Place]:
+class Places:
     """Line and column of every key, table and list entry of a text in TOML, by its path."""
+
+    def __init__(self, lines: list[bytes], starts: dict[Path, tuple[int, int]]) -> None:
+        self._lines = lines
+        self._starts = starts  # row and byte within it, from 0
+
+    def __contains__(self, path: Path) -> bool:
+        return path in self._starts
+
+    def __getitem__(self, path: Path) -> Place:
+        row, byte = self._starts[path]
+        before = self._lines[row][:byte].decode("utf-8", errors="replace")
+        return row + 1, len(before) + 1
+
+
+def positions(text: str) -> Places:
+    """The places of everything in a text in TOML."""
     import tree_sitter
     import tree_sitter_toml
 
     parser = tree_sitter.Parser(tree_sitter.Language(tree_sitter_toml.language()))
     source = text.encode("utf-8")
-    finder = _Finder(source.split(b"\n"))
+    finder = _Finder()
     finder.document(parser.parse(source).root_node)
-    return finder.found
+    return Places(source.split(b"\n"), finder.found)
 
 
 class _Finder:
     """Walks the syntax tree; `found` grows by what it meets, the first of each path."""
 
-    def __init__(self, lines: list[bytes]) -> None:
-        self.lines = lines
-        self.found: dict[Path, Place] = {}
+    def __init__(self) -> None:
+        self.found: dict[Path, tuple[int, int]] = {}
         self.counts: dict[Path, int] = {}  # of the tables in each list of tables
 
     def document(self, root: Any) -> None:
@@ -84,9 +99,7 @@ class _Finder:
                 self.value(child, (*path, index))
 
     def note(self, path: Path, node: Any) -> None:
-        row, column = node.start_point[0], node.start_point[1]
-        before = self.lines[row][:column].decode("utf-8", errors="replace")
-        self.found.setdefault(path, (row + 1, len(before) + 1))
+        self.found.setdefault(path, (node.start_point[0], node.start_point[1]))
 
     def parts(self, node: Any) -> list[str]:
         """The parts of a key: bare, quoted or dotted."""
