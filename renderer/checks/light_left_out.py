@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+import re
+from collections.abc import Iterator, Sequence
 
 import numpy as np
 
@@ -27,13 +28,12 @@ def check_left_out(view: FrameView, facts: Facts) -> Iterator[Finding]:
     lights = _sharp_lights(view, facts)
     if not lights or not opaque or not (smooth or mirrors):
         return
-    through = [item.name for item in (*smooth, *mirrors)]
     yield Finding(
         rule="light.left-out",
         title="Light that is left out",
         severity=ADVICE,
-        subject=", ".join(through[:3]) + (f" and {len(through) - 3} more" if len(through) > 3 else ""),
-        measured=f"{' and '.join(lights)} through or off smooth objects onto opaque ones",
+        subject=listed([item.name for item in (*smooth, *mirrors)]),
+        measured=f"light of {listed(lights)} through or off smooth objects onto opaque ones",
         expected=None,
         unit="",
         why=(
@@ -45,6 +45,12 @@ def check_left_out(view: FrameView, facts: Facts) -> Iterator[Finding]:
             "Judge the picture without caustics; or light the shot by a large lamp or the sky, which are complete.",
         ),
     )
+
+
+def listed(names: Sequence[str], most: int = 3) -> str:
+    """Names in a row, placements of one object as one; after so many only how many more there are."""
+    known = list(dict.fromkeys(re.sub(r"\[\d+\]$", "", name) for name in names))
+    return ", ".join(known[:most]) + (f" and {len(known) - most} more" if len(known) > most else "")
 
 
 def _mirror(item: Object) -> bool:
