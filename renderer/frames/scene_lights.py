@@ -71,7 +71,8 @@ def draw_table(powers: Floats) -> Floats:
     """(n + 1,) cumulative chances; equal ones when nothing shines."""
     if not len(powers):
         return np.zeros(1)
-    return cumulative((powers if powers.sum() > 0.0 else np.ones_like(powers))[None, :])[0]
+    table: Floats = cumulative((powers if powers.sum() > 0.0 else np.ones_like(powers))[None, :])[0]
+    return table
 
 
 def rows_of(primitive: Indices, n_primitives: int) -> Indices:
