@@ -10,7 +10,7 @@ from typing import Any
 from pydantic import ValidationError
 
 from renderer.base.errors import Fault, InputError
-from renderer.shot.faults import dotted, faults_of
+from renderer.shot.faults import faults_of
 from renderer.shot.files import Files
 from renderer.shot.moment import Moment
 from renderer.shot.overrides import Override, apply, parse_overrides, variant_overrides
@@ -23,6 +23,8 @@ from renderer.shot.schema.shot_file import ShotFile
 from renderer.shot.schema.table import find, remembering
 from renderer.shot.shot import Shot
 from renderer.shot.walk import changes_by_frame, leaves
+
+__all__ = ["Shot", "load_shot"]
 
 
 def load_shot(
@@ -137,6 +139,3 @@ class _Source:
 
         tables = apply(self.tables, [override for _, override in landed])[0] if landed else self.tables
         return faults_of(flaws, self.text, str(self.file), tables, origin)
-
-
-__all__ = ["Shot", "dotted", "load_shot"]

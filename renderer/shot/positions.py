@@ -45,6 +45,7 @@ class _Finder:
         self.counts: dict[Path, int] = {}  # of the tables in each list of tables
 
     def document(self, root: Any) -> None:
+        """Everything in a text."""
         for node in root.named_children:
             if node.type == "pair":
                 self.pair(node, ())
@@ -78,6 +79,7 @@ class _Finder:
         return (*path, self.counts[path] - 1) if path in self.counts else path
 
     def pair(self, node: Any, prefix: Path) -> None:
+        """A key with its value."""
         if len(node.named_children) < 2:
             return
         key, value = node.named_children[0], node.named_children[1]
@@ -88,6 +90,7 @@ class _Finder:
         self.value(value, path)
 
     def value(self, node: Any, path: Path) -> None:
+        """What is inside a list or a table in braces."""
         if node.type == "inline_table":
             for child in node.named_children:
                 if child.type == "pair":
@@ -99,6 +102,7 @@ class _Finder:
                 self.value(child, (*path, index))
 
     def note(self, path: Path, node: Any) -> None:
+        """Remember where a path stands."""
         self.found.setdefault(path, (node.start_point[0], node.start_point[1]))
 
     def parts(self, node: Any) -> list[str]:

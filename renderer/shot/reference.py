@@ -10,10 +10,12 @@ from pydantic.fields import FieldInfo
 from pydantic_core import PydanticUndefined
 
 from renderer.shot.schema.leaves import Choice, Leaf
-from renderer.shot.schema.numbers import NumberLeaf, Pairs, Whole, Wholes
+from renderer.shot.schema.numbers import NumberLeaf
 from renderer.shot.schema.shot_file import ShotFile
+from renderer.shot.schema.spectra import Pairs
 from renderer.shot.schema.table import Table, leaf_of
 from renderer.shot.schema.tree import kind_of
+from renderer.shot.schema.whole_numbers import Whole, Wholes
 
 FILE = Path(__file__).with_name("REFERENCE.md")
 

@@ -10,9 +10,10 @@ from renderer.shot.keyed import Scalar, Values
 from renderer.shot.schema.flaws import Flaw, Flawed, refusal
 from renderer.shot.schema.leaves import FileName, Leaf, Text, clean_text
 from renderer.shot.schema.matrices import rigid_flaws
-from renderer.shot.schema.numbers import Bounds, Number, NumberLeaf, Vector, Wholes, is_number, numbers_in
+from renderer.shot.schema.numbers import Bounds, Number, NumberLeaf, Vector, is_number, numbers_in
 from renderer.shot.schema.table import OneOf, Table, key
 from renderer.shot.schema.units import LENGTH
+from renderer.shot.schema.whole_numbers import Wholes
 
 MOST_PIXELS = 16_384  # a side
 MOST_OVERSCAN = 4_096

@@ -10,9 +10,10 @@ from pydantic import Field
 from renderer.shot.keyed import Scalar, Values
 from renderer.shot.schema.flaws import Flaw
 from renderer.shot.schema.leaves import Choice, Day, FrameRange, Text
-from renderer.shot.schema.numbers import Bounds, Number, Vector, Whole
+from renderer.shot.schema.numbers import Bounds, Number, Vector
 from renderer.shot.schema.table import OneOf, Table, key
 from renderer.shot.schema.units import LENGTH
+from renderer.shot.schema.whole_numbers import Whole
 
 SEVERITIES = ("impossible", "implausible", "advice")
 

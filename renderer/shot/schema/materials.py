@@ -8,7 +8,8 @@ from typing import Annotated, Any, ClassVar
 from renderer.shot.keyed import Scalar, Values
 from renderer.shot.schema.flaws import Flaw
 from renderer.shot.schema.leaves import MaterialName, Substance
-from renderer.shot.schema.numbers import Bounds, Number, Numbers, Pairs, Vector
+from renderer.shot.schema.numbers import Bounds, Number, Numbers, Vector
+from renderer.shot.schema.spectra import Pairs
 from renderer.shot.schema.table import OneOf, Table, key
 
 INDEX = Bounds(0.5, 5.0)

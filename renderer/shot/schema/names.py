@@ -48,6 +48,22 @@ def repeated_names(shot: dict[str, Any]) -> Iterator[Flaw]:
                         "a name of its own",
                     )
                 taken.setdefault(name, f"{kind}[{index}]")
+                if _filled(row):
+                    taken.setdefault(f"{name} filling", f"what stands in {kind}[{index}]")
+
+
+def _vessels(row: dict[str, Any]) -> Iterator[tuple[str, dict[str, Any]]]:
+    """The vessels of an object's shape, by kind."""
+    shape = row.get("shape")
+    for kind in ("tank", "bowl"):
+        vessel = shape.get(kind) if isinstance(shape, dict) else None
+        if isinstance(vessel, dict):
+            yield kind, vessel
+
+
+def _filled(row: dict[str, Any]) -> bool:
+    """Whether something stands in an object, which has a name of its own."""
+    return any("filling" in vessel for _, vessel in _vessels(row))
 
 
 def unknown_materials(shot: dict[str, Any]) -> Iterator[Flaw]:
@@ -74,9 +90,6 @@ def _references(shot: dict[str, Any]) -> Iterator[tuple[Path, str]]:
         for key in ("material", "below"):
             if isinstance(row.get(key), str):
                 yield ("objects", index, key), row[key]
-        shape = row.get("shape")
-        for kind in ("tank", "bowl"):
-            vessel = shape.get(kind) if isinstance(shape, dict) else None
-            filling = vessel.get("filling") if isinstance(vessel, dict) else None
-            if isinstance(filling, str):
-                yield ("objects", index, "shape", kind, "filling"), filling
+        for kind, vessel in _vessels(row):
+            if isinstance(vessel.get("filling"), str):
+                yield ("objects", index, "shape", kind, "filling"), vessel["filling"]

@@ -1,4 +1,4 @@
-"""Leaves of the schema that hold numbers: one, a vector, a colour, lists and tables of pairs; and keying by frame."""
+"""Leaves of the schema that hold numbers: one, a vector or colour, a list; and keying by frame."""
 
 from __future__ import annotations
 
@@ -61,6 +61,9 @@ class Bounds:
         return schema | ({"not": {"const": 0}} if self.nonzero else {})
 
 
+ANY = Bounds()
+
+
 def in_unit(unit: str) -> str:
     """A unit, to follow "a number" or the like; empty where there is none."""
     if not unit:
@@ -80,7 +83,7 @@ class NumberLeaf(Leaf):
     """What all leaves of numbers share: a unit, bounds of every number, and whether it may be keyed."""
 
     unit_text: str = ""
-    bounds: Bounds = Bounds()
+    bounds: Bounds = ANY
     may_be_keyed: bool = True
 
     @property
@@ -256,142 +259,3 @@ def numbers_in(values: list[Any], leaf: NumberLeaf) -> tuple[float, ...]:
     if flaws:
         raise Flawed(*flaws)
     return tuple(found)
-
-
-@dataclass(frozen=True)
-class Whole(Leaf):
-    """A whole number from `low` to `high`; never keyed."""
-
-    low: int
-    high: int
-    unit_text: str = ""
-
-    @property
-    def unit(self) -> str:
-        return self.unit_text
-
-    def expects(self) -> str:
-        return f"a whole number from {plain(self.low)} to {plain(self.high)}{in_unit(self.unit)}"
-
-    def read(self, value: Any) -> int:
-        if isinstance(value, int) and not isinstance(value, bool) and self.low <= value <= self.high:
-            return value
-        raise Flawed(refusal(value, self.expects()))
-
-    def json(self) -> dict[str, Any]:
-        return {"type": "integer", "minimum": self.low, "maximum": self.high}
-
-
-@dataclass(frozen=True)
-class Wholes(Leaf):
-    """`count` whole numbers; with `single`, one stands for all of them."""
-
-    count: int
-    low: int
-    high: int
-    unit_text: str = ""
-    single: bool = False
-
-    @property
-    def unit(self) -> str:
-        return self.unit_text
-
-    def expects(self) -> str:
-        single = ", or one for all of them" if self.single else ""
-        return f"{self.count} whole numbers from {plain(self.low)} to {plain(self.high)}{in_unit(self.unit)}{single}"
-
-    def read(self, value: Any) -> tuple[int, ...]:
-        whole = Whole(self.low, self.high)
-        if self.single and isinstance(value, int) and not isinstance(value, bool):
-            value = [value] * self.count
-        if not isinstance(value, list):
-            raise Flawed(refusal(value, self.expects()))
-        if len(value) != self.count:
-            raise Flawed(Flaw((), f"`{{key}}` has {len(value)} entries", self.expects()))
-        flaws: list[Flaw] = []
-        for index, entry in enumerate(value):
-            try:
-                whole.read(entry)
-            except Flawed as error:
-                flaws += below((index,), error.flaws)
-        if flaws:
-            raise Flawed(*flaws)
-        return tuple(value)
-
-    def json(self) -> dict[str, Any]:
-        item = {"type": "integer", "minimum": self.low, "maximum": self.high}
-        many = {"type": "array", "items": item, "minItems": self.count, "maxItems": self.count}
-        return {"anyOf": [item, many]} if self.single else many
-
-
-LOWEST_NM, HIGHEST_NM = 200.0, 3000.0  # of a table that the shot gives; what is used lies in 380-780 nm
-
-
-@dataclass(frozen=True)
-class Pairs(Leaf):
-    """A table by wavelength, ``[[nm, value], ...]``, never keyed; wavelengths rise, or with `any_order` are made to."""
-
-    of: str
-    bounds: Bounds = Bounds()
-    unit_text: str = ""
-    fewest: int = 1
-    most: int = 10_000
-    lowest_nm: float = LOWEST_NM
-    highest_nm: float = HIGHEST_NM
-    any_order: bool = False
-
-    @property
-    def unit(self) -> str:
-        return f"nm, {self.unit_text}" if self.unit_text else "nm"
-
-    def expects(self) -> str:
-        tail = NumberLeaf(self.unit_text, self.bounds).tail()
-        rising = f"wavelengths {'' if self.any_order else 'rising '}from {self.lowest_nm:g} to {self.highest_nm:g} nm"
-        return f"pairs [[nm, {self.of}], ...], {rising}, {self.of}{tail}"
-
-    def read(self, value: Any) -> tuple[tuple[float, float], ...]:
-        if not isinstance(value, list):
-            raise Flawed(refusal(value, self.expects()))
-        if not self.fewest <= len(value) <= self.most:
-            raise Flawed(
-                Flaw((), f"`{{key}}` has {len(value)} entries", f"{self.fewest} to {self.most} {self.expects()}")
-            )
-        flaws: list[Flaw] = []
-        pairs = [self._pair(entry, index, flaws) for index, entry in enumerate(value)]
-        flaws = flaws or self._order_flaws(pairs)
-        if flaws:
-            raise Flawed(*flaws)
-        return tuple(sorted(pairs))
-
-    def _order_flaws(self, pairs: list[tuple[float, float]]) -> list[Flaw]:
-        """Wavelengths that repeat, or that fall where they must rise."""
-        found = []
-        for i, (wavelength, _) in enumerate(pairs):
-            if self.any_order and any(wavelength == other for other, _ in pairs[:i]):
-                found.append(Flaw((i,), f"`{{key}}` is at {wavelength:g} nm again", "each wavelength once"))
-            if not self.any_order and i > 0 and wavelength <= pairs[i - 1][0]:
-                what = f"`{{key}}` is at {wavelength:g} nm, after {pairs[i - 1][0]:g} nm"
-                found.append(Flaw((i,), what, "wavelengths that rise"))
-        return found
-
-    def _pair(self, entry: Any, index: int, flaws: list[Flaw]) -> tuple[float, float]:
-        """One pair; (0, 0) with new flaws where it is none."""
-        if not isinstance(entry, list) or len(entry) != 2:
-            flaws.append(refusal(entry, f"a pair [nm, {self.of}]", (index,)))
-            return 0.0, 0.0
-        try:
-            wavelength = NumberLeaf("nm", Bounds(self.lowest_nm, self.highest_nm)).one(entry[0], (index, 0))
-            return wavelength, NumberLeaf(self.unit_text, self.bounds).one(entry[1], (index, 1))
-        except Flawed as error:
-            flaws += error.flaws
-            return 0.0, 0.0
-
-    def json(self) -> dict[str, Any]:
-        wavelength = {"type": "number", "minimum": self.lowest_nm, "maximum": self.highest_nm}
-        pair = {
-            "type": "array",
-            "prefixItems": [wavelength, {"type": "number", **self.bounds.json()}],
-            "minItems": 2,
-            "maxItems": 2,
-        }
-        return {"type": "array", "items": pair, "minItems": self.fewest, "maxItems": self.most}

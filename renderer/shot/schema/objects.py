@@ -11,11 +11,12 @@ from renderer.shot.keyed import Scalar, Values
 from renderer.shot.schema.flaws import Flaw
 from renderer.shot.schema.leaves import Choice, File, FileName, MaterialName, Names, Substance, Switch, Text
 from renderer.shot.schema.matrices import affine_flaws
-from renderer.shot.schema.numbers import Bounds, Number, Vector, Whole
+from renderer.shot.schema.numbers import Bounds, Number, Vector
 from renderer.shot.schema.shapes import Shape
 from renderer.shot.schema.surfaces import Emission, Surface
 from renderer.shot.schema.table import OneOf, Table, key
 from renderer.shot.schema.units import LENGTH, METRES
+from renderer.shot.schema.whole_numbers import Whole
 
 MOST_PLACEMENTS = 100_000
 

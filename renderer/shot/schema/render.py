@@ -7,8 +7,9 @@ from typing import Annotated
 
 from renderer.shot.schema.flaws import Flaw
 from renderer.shot.schema.leaves import Choice
-from renderer.shot.schema.numbers import Bounds, Numbers, Whole
+from renderer.shot.schema.numbers import Bounds, Numbers
 from renderer.shot.schema.table import Table, key
+from renderer.shot.schema.whole_numbers import Whole
 
 
 class Render(Table):

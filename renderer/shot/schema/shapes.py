@@ -8,9 +8,10 @@ from typing import Annotated, Any, ClassVar
 from renderer.shot.keyed import Scalar, Values
 from renderer.shot.schema.flaws import Flaw
 from renderer.shot.schema.leaves import MaterialName, Substance
-from renderer.shot.schema.numbers import Bounds, Number, Vector, Whole, Wholes
+from renderer.shot.schema.numbers import Bounds, Number, Vector
 from renderer.shot.schema.table import OneOf, Table, key
 from renderer.shot.schema.units import LENGTH
+from renderer.shot.schema.whole_numbers import Whole, Wholes
 
 POSITIVE = Bounds(above=0)
 MOST_CELLS = 4_000_000

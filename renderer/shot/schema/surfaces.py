@@ -10,7 +10,8 @@ from renderer.shot.keyed import Scalar, Values
 from renderer.shot.schema.colours import black_flaws
 from renderer.shot.schema.flaws import Flaw
 from renderer.shot.schema.leaves import Choice, File, FileName, Switch
-from renderer.shot.schema.numbers import Bounds, Number, Pairs, Vector
+from renderer.shot.schema.numbers import Bounds, Number, Vector
+from renderer.shot.schema.spectra import Pairs
 from renderer.shot.schema.table import OneOf, Table, key
 
 SHARE = Bounds(0, 1)
