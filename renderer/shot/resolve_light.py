@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 
-from renderer.shot.angles import sine_cosine_deg
+from renderer.optics.exact_functions import sine_cosine_deg
 from renderer.shot.model import Axes, Sky, Sun, Vector
 from renderer.shot.moment import Moment
 from renderer.shot.schema.flaws import Flaw
@@ -13,8 +13,7 @@ from renderer.shot.transforms import dot, unit
 
 def direction_of(elevation_deg: float, azimuth_deg: float, axes: Axes) -> Vector:
     """Unit world direction by elevation and azimuth, clockwise from north."""
-    up, level = sine_cosine_deg(elevation_deg)
-    east, north = sine_cosine_deg(azimuth_deg)
+    (up, east), (level, north) = (part.tolist() for part in sine_cosine_deg([elevation_deg, azimuth_deg]))
     x, y, z = (level * north * axes.north[i] + level * east * axes.east[i] + up * axes.up[i] + 0.0 for i in range(3))
     return unit((x, y, z))
 

@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 import math
+from functools import lru_cache
 
-from renderer.shot.angles import sine_cosine_deg
+from renderer.optics.exact_functions import sine_cosine_deg
 from renderer.shot.keyed import Keys, Values, between, values_at
 from renderer.shot.model import Vector
 from renderer.shot.schema.objects import Transform
@@ -41,9 +42,10 @@ def joined(turned: Square, moved: tuple[float, ...]) -> Matrix:
     return (*turned[0:3], moved[0], *turned[3:6], moved[1], *turned[6:9], moved[2])
 
 
+@lru_cache(maxsize=4096)
 def rotation(angles_deg: tuple[float, ...]) -> Square:
     """Turned about x, then y, then z, each right-handed about the axis of the world."""
-    (sx, cx), (sy, cy), (sz, cz) = (sine_cosine_deg(angle) for angle in angles_deg)
+    (sx, sy, sz), (cx, cy, cz) = (part.tolist() for part in sine_cosine_deg(angles_deg))
     about_x = (1.0, 0.0, 0.0, 0.0, cx, -sx, 0.0, sx, cx)
     about_y = (cy, 0.0, sy, 0.0, 1.0, 0.0, -sy, 0.0, cy)
     about_z = (cz, -sz, 0.0, sz, cz, 0.0, 0.0, 0.0, 1.0)
