@@ -40,7 +40,8 @@ class AreaLights(NamedTuple):
 
     instance: npt.NDArray[np.int32]  # (n_triangles,) as ray search numbers instances
     primitive: npt.NDArray[np.int32]  # (n_triangles,) as ray search numbers primitives
-    cdf: npt.NDArray[np.float64]  # (n_triangles + 1,): cumulative chance of being picked
+    light: npt.NDArray[np.int32]  # (n_triangles,): row of radiance below
+    cdf: npt.NDArray[np.float64]  # (n_triangles + 1,): cumulative chance of being picked; (1,) where there are none
     of_primitive: npt.NDArray[np.int32]  # (n_primitives of the world or 1,): row above, or -1
     radiance: npt.NDArray[np.float64]  # (n_lights or 1, 401) [W m^-2 sr^-1 nm^-1]
     line_radiance: npt.NDArray[np.float64]  # (n_lights or 1, n_lines) [W m^-2 sr^-1] in each spectral line
