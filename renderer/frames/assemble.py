@@ -47,6 +47,8 @@ def assemble(shot: FrameShot) -> Scene:
         spectrum=Spectrum(*(pack(part, part.dtype) for part in spectrum)),
         notes=tuple(table.notes),
         reference_radiance=brightest(shot, sun, sky),
+        splits=shot.settings.splits,
+        max_interfaces=shot.settings.max_interfaces,
         object_names=tuple(item.name for item in shot.objects),
         material_names=tuple(table.material_names),
     )

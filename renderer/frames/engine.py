@@ -44,9 +44,11 @@ def use_threads(threads: int | None) -> int:
     """Let kernels run on so many threads, or on all that this process may have; gives how many it is."""
     import numba
 
-    most = int(numba.config.NUMBA_NUM_THREADS)  # type: ignore[attr-defined]
-    chosen = most if threads is None else max(1, min(threads, most))
-    numba.set_num_threads(chosen)
+    from renderer.transport.threads import set_threads
+
+    chosen = set_threads(threads)
+    # Search trees are built by loops of Numba's own, which never take more threads than it was started with.
+    numba.set_num_threads(min(chosen, int(numba.config.NUMBA_NUM_THREADS)))  # type: ignore[attr-defined]
     return chosen
 
 

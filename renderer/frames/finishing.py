@@ -132,10 +132,9 @@ def picture_facts(shot: FrameShot, work: Work, finish: Finish, done: Accumulated
 
 
 def cap_share(work: Work) -> float:
-    """Luminance lost where paths were cut off, as a share of the picture's. [1]"""
-    total = float(np.abs(work.sums.xyz[..., 1]).sum(dtype=np.float64))
-    lost = float(work.tally.get("cap_lost", 0))
-    return lost / total if total > 0.0 else 0.0
+    """Power of camera paths that was lost where they were cut off, as a share of all paths' at the camera. [1]"""
+    samples = work.tally.get("samples", 0)
+    return work.tally.get("cap_lost", 0) / 2.0**32 / samples if samples else 0.0
 
 
 def layer_meanings(channels: Channels) -> dict[str, str]:

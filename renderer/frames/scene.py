@@ -17,7 +17,7 @@ class Scene:
 
     `notes` are warnings for a person, one sentence each. `reference_radiance` is the luminance of the brightest light
     [cd/m2], from the shot alone; it sets the grid of exact sums. `object_names` by object id, `material_names` by row
-    of `materials` (row 0 is air).
+    of `materials` (row 0 is air). `splits` interfaces are followed both ways; paths are cut after `max_interfaces`.
     """
 
     world: World
@@ -31,5 +31,7 @@ class Scene:
     spectrum: Spectrum
     notes: tuple[str, ...]
     reference_radiance: float
+    splits: int
+    max_interfaces: int
     object_names: tuple[str, ...]
     material_names: tuple[str, ...]

@@ -34,7 +34,7 @@ def turn(matrices, time, x, y, z):
 
 @kernel
 def distorted(distortion, x, y):
-    """Brown's distortion of an image point in focal lengths, and its derivatives (D. C. Brown, Photogramm. Eng. 32, 1966)."""
+    """Brown's distortion of an image point in focal lengths, with derivatives (Brown, Photogramm. Eng. 32, 1966)."""
     k1, k2, k3, p1, p2 = distortion[0], distortion[1], distortion[2], distortion[3], distortion[4]
     q = x * x + y * y
     radial = 1.0 + q * (k1 + q * (k2 + q * k3))
@@ -93,7 +93,7 @@ def on_disc(u, v):
 
 @kernel
 def camera_ray(camera, column, row, u_lens, v_lens, time):
-    """Origin and direction of the ray through a place on the frame and a place on the lens, at a time in the shutter."""
+    """Origin and direction of the ray through a place on the frame and one on the lens, at a time in the shutter."""
     x, y = image_point(camera, column, row)
     matrices = camera.matrices
     ex, ey = 0.0, 0.0

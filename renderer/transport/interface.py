@@ -2,13 +2,11 @@
 
 from __future__ import annotations
 
-import math
-
 from renderer.base.jit import kernel
 from renderer.base.vectors import dot, unit
 from renderer.optics.fresnel_kernels import fresnel_mueller
 from renderer.transport.layout import DIRECTION, LANE_NM, RATIO
-from renderer.transport.stokes import apply_block, depolarise, scale_row, share
+from renderer.transport.stokes import apply_block, scale_row, share
 from renderer.transport.wavelengths import table_at
 
 GRAZE = 1e-6  # least cosine with the true surface that a bent ray keeps
@@ -67,7 +65,7 @@ def lane_mueller(materials, m1, m2, cos_i, nm):
 
 @kernel
 def reflect_lanes(reals, k, materials, m1, m2, cos_i, lanes, n_lanes, chance):
-    """Carry the lanes through a reflection that was followed for certain (chance 0) or drawn with the hero's `chance`."""
+    """Carry the lanes through a reflection: followed for certain (chance 0), or drawn with the hero's `chance`."""
     for lane in range(n_lanes):
         ra, rb, rc, rs, _, _, _, _ = lane_mueller(materials, m1, m2, cos_i, lanes[lane, LANE_NM])
         if chance > 0.0:
@@ -79,7 +77,7 @@ def reflect_lanes(reals, k, materials, m1, m2, cos_i, lanes, n_lanes, chance):
 
 @kernel
 def refract_lanes(reals, k, materials, m1, m2, cos_i, lanes, n_lanes, chance):
-    """Carry the lanes through a refraction, as `reflect_lanes` does through a reflection; chance is that of refraction."""
+    """Carry the lanes through a refraction, as `reflect_lanes` does through a reflection; `chance` is of refraction."""
     for lane in range(n_lanes):
         _, _, _, _, ta, tb, tc, _ = lane_mueller(materials, m1, m2, cos_i, lanes[lane, LANE_NM])
         if chance > 0.0:
@@ -87,13 +85,6 @@ def refract_lanes(reals, k, materials, m1, m2, cos_i, lanes, n_lanes, chance):
         apply_block(reals, k, lane, ta, tb, tc, 0.0)
         if chance > 0.0:
             scale_row(reals, k, lane, 1.0 / chance)
-
-
-@kernel
-def depolarise_all(reals, k):
-    """Keep each lane's first element: what a rough vertex leaves."""
-    for lane in range(4):
-        depolarise(reals, k, lane, 1.0)
 
 
 @kernel
@@ -106,9 +97,3 @@ def tangent_frame_to(x, y, z, tx, ty, tz, bx, by, bz, nx, ny, nz):
 def tangent_frame_from(x, y, z, tx, ty, tz, bx, by, bz, nx, ny, nz):
     """A vector of the frame (t, b, n) in the world, unit."""
     return unit(x * tx + y * bx + z * nx, x * ty + y * by + z * ny, x * tz + y * bz + z * nz)
-
-
-@kernel
-def solid_angle_ok(value):
-    """Whether a density can be divided by."""
-    return value > 0.0 and not math.isinf(value)

@@ -1,7 +1,8 @@
 """Where the state of a path lies in its work arrays, and the names of what is counted.
 
-A block of pixels has one set of work arrays: `reals` (N_SLOTS, N_REALS), `whole` (N_SLOTS, N_WHOLE), `sets` (N_SLOTS, 2).
-A slot holds a path that is followed, or a branch that waits; `lanes` (4, N_LANE_REALS) belongs to the whole sample.
+A thread has one set of work arrays: `reals` (N_SLOTS, N_REALS), `whole` (N_SLOTS, N_WHOLE) and `sets`
+(N_SLOTS, 2). A slot holds a path that is followed, or a branch that waits; `lanes` (4, N_LANE_REALS) belongs to the
+whole sample.
 """
 
 from __future__ import annotations
@@ -17,7 +18,8 @@ MIS = 8  # sum of the lanes' density ratios before the last scattering over its 
 AXIS = 9  # 3: unit, across the ray: the reference of the Stokes parameters
 ROW = 12  # 16: first row of the Mueller product, four lanes of four
 RATIO = 28  # 4: density of the path for each lane's wavelength over the hero's
-N_REALS = 32
+START = 32  # what the path carried when it became a branch
+N_REALS = 33
 
 # whole: one row a slot
 INSTANCE_AFTER = 0
@@ -46,14 +48,14 @@ N_LANE_REALS = 7
 KINDS = ("sky", "direct", "reflected", "transmitted")
 SKY, DIRECT, REFLECTED, TRANSMITTED = range(4)
 
-# tally: one row a block of pixels
+# tally
 SEGMENTS = 0
 SAMPLES = 1
 NON_FINITE = 2
 SATURATED = 3
 SET_OVERFLOW = 4
 CAPPED = 5
-CAP_LOST = 6  # in quanta of luminance
+CAP_LOST = 6  # power that cut paths still carried, in 2^-32 of a path's at the camera
 LEFT_OUT = 7
 UNMATCHED = 8
 N_TALLY = 9
@@ -67,7 +69,7 @@ SET_MAX_INTERFACES = 4
 N_SETTINGS = 5
 
 SMOOTH_BELOW = 0.02  # roughness under which an interface, or a mirror, counts as smooth
-MAX_DEPTH = 1024  # events of any kind before a path is cut off; the energy lost is counted
+MAX_DEPTH = 8192  # events of any kind before a path is cut off; the power lost is counted
 
 # vertex: what a rough scattering needs to know of where it happens, one array a block of pixels
 FRAME = 0  # 9: tangent, bitangent, shading normal (on the side of the ray)

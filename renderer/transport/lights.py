@@ -10,7 +10,6 @@ from renderer.ray_search.hits import triangle_corners
 from renderer.transport.layout import LANE_LINE, LANE_NM
 from renderer.transport.wavelengths import spectrum_at, table_at
 
-
 # The sun.
 
 
@@ -130,7 +129,7 @@ def bisect(cdf, u):
 
 @kernel
 def draw_sky(sky, u, v):
-    """(direction, row, column) drawn by the map's luminance: a cell by its share, then evenly within its solid angle."""
+    """(direction, row, column) drawn by the map's luminance: a cell by its share, evenly within its solid angle."""
     n_rows, n_columns = sky.coefficients.shape[0] - 1, sky.coefficients.shape[1]
     i = bisect(sky.row_cdf, u)
     fi = (u - sky.row_cdf[i]) / (sky.row_cdf[i + 1] - sky.row_cdf[i])

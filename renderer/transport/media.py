@@ -63,7 +63,7 @@ def absorb(materials, material, lanes_nm, length_m):
 @kernel
 def is_boundary(kind):
     """Whether an object of this kind has an inside that rays enter and leave."""
-    return kind == CLEAR or kind == SHEET
+    return kind in (CLEAR, SHEET)
 
 
 @kernel

@@ -36,7 +36,7 @@ def reverse_bits(value):
 
 @kernel
 def scramble_reversed(reversed_bits, seed):
-    """Owen scrambling of a number whose bits are reversed (Laine and Karras 2011, with the constants of Burley 2020)."""
+    """Owen scrambling of a number whose bits are reversed (Laine and Karras 2011; constants of Burley 2020)."""
     x = np.uint64(reversed_bits)
     s = np.uint64(seed) & MASK
     x = (x + s) & MASK

@@ -35,8 +35,9 @@ def absorbed_lanes(materials, material, lanes, length_m, clear):
 
 
 @kernel
-def pane_share(materials, objects, item, outer, cos_i, nm):
+def pane_share(frame, item, outer, cos_i, nm):
     """(RA, RB, RC, TA, TB, TC) of a pane in its surroundings, at a wavelength."""
+    materials, objects = frame.materials, frame.objects
     material = objects.material[item]
     n = table_at(materials.index, material, nm) / table_at(materials.index, outer, nm)
     cos_t = refract_cosine(cos_i, 1.0, n)
@@ -47,19 +48,19 @@ def pane_share(materials, objects, item, outer, cos_i, nm):
 
 
 @kernel
-def through_pane(materials, objects, item, outer, cos_i, lanes, clear):
+def through_pane(frame, item, outer, cos_i, lanes, clear):
     """The four transmittances `clear`, after a pane met by unpolarised light."""
     return (
-        clear[0] * pane_share(materials, objects, item, outer, cos_i, lanes[0, LANE_NM])[3],
-        clear[1] * pane_share(materials, objects, item, outer, cos_i, lanes[1, LANE_NM])[3],
-        clear[2] * pane_share(materials, objects, item, outer, cos_i, lanes[2, LANE_NM])[3],
-        clear[3] * pane_share(materials, objects, item, outer, cos_i, lanes[3, LANE_NM])[3],
+        clear[0] * pane_share(frame, item, outer, cos_i, lanes[0, LANE_NM])[3],
+        clear[1] * pane_share(frame, item, outer, cos_i, lanes[1, LANE_NM])[3],
+        clear[2] * pane_share(frame, item, outer, cos_i, lanes[2, LANE_NM])[3],
+        clear[3] * pane_share(frame, item, outer, cos_i, lanes[3, LANE_NM])[3],
     )
 
 
 @kernel
 def passes(objects, item, low, high, entering):
-    """Whether a boundary changes nothing for a ray (another object of higher priority is there), and the set after it."""
+    """Whether a boundary changes nothing for a ray (one of higher priority is there), and the set after it."""
     low2, high2, _ = crossed(objects, low, high, item, entering)
     same = material_of(objects, top_object(objects, low, high)) == material_of(
         objects, top_object(objects, low2, high2)
@@ -68,8 +69,9 @@ def passes(objects, item, low, high, entering):
 
 
 @kernel
-def step_through(world, objects, materials, lanes, ox, oy, oz, dx, dy, dz, time, reach, skip_i, skip_p, low, high):
+def step_through(frame, lanes, ox, oy, oz, dx, dy, dz, time, reach, skip_i, skip_p, low, high):
     """The slow half of `seen`: surface by surface along the ray, as long as each lets it by."""
+    world, objects, materials = frame.world, frame.objects, frame.materials
     clear = (1.0, 1.0, 1.0, 1.0)
     t, instance, primitive = 0.0, -1, -1
     done = 0.0
@@ -80,13 +82,13 @@ def step_through(world, objects, materials, lanes, ox, oy, oz, dx, dy, dz, time,
         outer = material_of(objects, top_object(objects, low, high))
         if instance < 0:
             return absorbed_lanes(materials, outer, lanes, reach - done, clear)
-        frame = hit_frame(world, instance, primitive, u, v, ox, oy, oz, dx, dy, dz, t, time)
-        item = frame[11]
-        facing = dot(frame[3], frame[4], frame[5], dx, dy, dz)
+        hit = hit_frame(world, instance, primitive, u, v, ox, oy, oz, dx, dy, dz, t, time)
+        item = hit[11]
+        facing = dot(hit[3], hit[4], hit[5], dx, dy, dz)
         clear = absorbed_lanes(materials, outer, lanes, t - done, clear)
         done = t
         if objects.kind[item] == PANE:
-            clear = through_pane(materials, objects, item, outer, min(abs(facing), 1.0), lanes, clear)
+            clear = through_pane(frame, item, outer, min(abs(facing), 1.0), lanes, clear)
         elif is_boundary(objects.kind[item]):
             same, low, high = passes(objects, item, low, high, facing < 0.0)
             if not same:
@@ -97,20 +99,19 @@ def step_through(world, objects, materials, lanes, ox, oy, oz, dx, dy, dz, time,
 
 
 @kernel
-def seen(world, objects, materials, lanes, ox, oy, oz, dx, dy, dz, time, reach, skip_i, skip_p, low, high):
+def seen(frame, lanes, ox, oy, oz, dx, dy, dz, time, reach, skip_i, skip_p, low, high):
     """Transmittance of the four lanes from a vertex along a direction, up to the distance `reach` (may be infinite)."""
-    instance, primitive = any_hit(world, ox, oy, oz, dx, dy, dz, time, reach, skip_i, skip_p)
+    objects = frame.objects
+    instance, primitive = any_hit(frame.world, ox, oy, oz, dx, dy, dz, time, reach, skip_i, skip_p)
     if instance < 0:
         outer = material_of(objects, top_object(objects, low, high))
-        return absorbed_lanes(materials, outer, lanes, reach, (1.0, 1.0, 1.0, 1.0))
+        return absorbed_lanes(frame.materials, outer, lanes, reach, (1.0, 1.0, 1.0, 1.0))
     # An opaque object ends it; only where the first found is clear is it worth a walk.
-    frame = hit_frame(world, instance, primitive, 0.3, 0.3, ox, oy, oz, dx, dy, dz, 0.0, time)
-    kind = objects.kind[frame[11]]
+    hit = hit_frame(frame.world, instance, primitive, 0.3, 0.3, ox, oy, oz, dx, dy, dz, 0.0, time)
+    kind = objects.kind[hit[11]]
     if not is_boundary(kind) and kind != PANE:
         return BLOCKED
-    return step_through(
-        world, objects, materials, lanes, ox, oy, oz, dx, dy, dz, time, reach, skip_i, skip_p, low, high
-    )
+    return step_through(frame, lanes, ox, oy, oz, dx, dy, dz, time, reach, skip_i, skip_p, low, high)
 
 
 @kernel

@@ -1,8 +1,8 @@
 """Rows of Mueller products along a camera path: turning their axis and meeting interfaces.
 
-The row r of a lane says what the path shows of light with Stokes vector S at its end: r0 S0 + r1 S1 + r2 S2 + r3 S3. Its
-axis is `AXIS`, across the ray; the second axis is light x AXIS, where light runs against the camera ray. The conventions
-are those of renderer/optics/fresnel_kernels.py.
+The row r of a lane says what the path shows of light with Stokes vector S at its end: r0 S0 + r1 S1 + r2 S2 + r3 S3.
+Its axis is `AXIS`, across the ray; the second axis is light x AXIS, where light runs against the camera ray. The
+conventions are those of renderer/optics/fresnel_kernels.py.
 """
 
 from __future__ import annotations

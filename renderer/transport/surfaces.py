@@ -144,7 +144,7 @@ def lobes(top, alpha, vx, vy, vz, wx, wy, wz):
 
 @kernel
 def schlick(reflectance, cosine):
-    """Reflectance of a metal at a cosine, from that at normal incidence (C. Schlick, Computer Graphics Forum 13(3), 1994)."""
+    """Reflectance of a metal at a cosine, from that at normal incidence (Schlick, Comput. Graph. Forum 13(3), 1994)."""
     x = 1.0 - min(max(cosine, 0.0), 1.0)
     x2 = x * x
     return reflectance + (1.0 - reflectance) * x2 * x2 * x

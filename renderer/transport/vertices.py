@@ -5,6 +5,7 @@ from __future__ import annotations
 from renderer.base.jit import kernel
 from renderer.base.vectors import across, dot
 from renderer.optics.fresnel_kernels import unpolarised_reflectance
+from renderer.ray_search.hits import leave
 from renderer.transport.interface import tangent_frame_from, tangent_frame_to
 from renderer.transport.layout import (
     ALPHA,
@@ -67,6 +68,15 @@ def from_vertex(vertex, x, y, z):
 def height(vertex, dx, dy, dz):
     """Cosine of a world direction with the true normal."""
     return dot(dx, dy, dz, vertex[TRUE_NORMAL], vertex[TRUE_NORMAL + 1], vertex[TRUE_NORMAL + 2])
+
+
+@kernel
+def leave_vertex(vertex, dx, dy, dz):
+    """Where a ray into the world direction d starts from a vertex."""
+    return leave(
+        vertex[POINT], vertex[POINT + 1], vertex[POINT + 2],
+        vertex[TRUE_NORMAL], vertex[TRUE_NORMAL + 1], vertex[TRUE_NORMAL + 2], vertex[POINT_ERROR], dx, dy, dz,
+    )  # fmt: skip
 
 
 @kernel
