@@ -7,7 +7,6 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
 
-import numpy as np
 import numpy.typing as npt
 
 from renderer.frames.engine import Engine, all_guides
