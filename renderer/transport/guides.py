@@ -120,7 +120,7 @@ def guide_some(frame, row_from, first, stop, depth, normal, object_id, material_
     """The guides of rows `first` up to `stop`; row 0 of the arrays is row `row_from` of the camera's window."""
     camera = frame.camera
     ox, oy, oz, _, _, _ = camera_ray(camera, 0.5 * camera.lens[3], 0.5 * camera.lens[4], 0.5, 0.5, MIDDLE_TIME)
-    low, high, _ok = surroundings(frame.world, ox, oy, oz, MIDDLE_TIME)
+    low, high, _ok = surroundings(frame, ox, oy, oz, MIDDLE_TIME)
     for row in range(first, stop):
         for column in range(depth.shape[1]):
             guide_pixel(frame, low, high, row_from, row, column, depth, normal, object_id, material_id, crossed_count,

@@ -6,7 +6,7 @@ import math
 
 from renderer.arrays.looks import LIGHT, PANE
 from renderer.base.jit import kernel
-from renderer.base.vectors import dot
+from renderer.base.vectors import dot, unit
 from renderer.ray_search.hits import hit_frame
 from renderer.ray_search.search import any_hit, closest_hit, objects_at
 from renderer.transport.boundaries import meet_boundary
@@ -68,23 +68,29 @@ N_LOOKS = 8  # directions in which the point query is tried
 
 
 @kernel
-def look(k):
-    """The k-th direction of the point query: of no symmetry that a scene could share."""
+def look(axes, k):
+    """The k-th direction of the point query: nearly upright, so that it meets open water, and of no symmetry that a
+    scene could share. `axes` are the sky's: east, up, north."""
     a = 0.737 + 2.399963229728653 * k  # the golden angle spreads them
-    z = 0.1234567 + 0.11 * k
-    r = math.sqrt(1.0 - z * z)
-    return r * math.cos(a), z, r * math.sin(a)
+    up = 0.9734567 - 0.11 * k
+    side = math.sqrt(1.0 - up * up)
+    east, north = side * math.cos(a), side * math.sin(a)
+    return unit(
+        east * axes[0, 0] + up * axes[1, 0] + north * axes[2, 0],
+        east * axes[0, 1] + up * axes[1, 1] + north * axes[2, 1],
+        east * axes[0, 2] + up * axes[1, 2] + north * axes[2, 2],
+    )
 
 
 @kernel
-def surroundings(world, x, y, z, time):
+def surroundings(frame, x, y, z, time):
     """The set of objects that hold a point, and whether one was found that could be stored."""
-    ux, uy, uz = look(0)
-    low, high, ok = objects_at(world, x, y, z, time, ux, uy, uz)
+    ux, uy, uz = look(frame.sky.axes, 0)
+    low, high, ok = objects_at(frame.world, x, y, z, time, ux, uy, uz)
     k = 1
     while not ok and k < N_LOOKS:
-        ux, uy, uz = look(k)
-        low, high, ok = objects_at(world, x, y, z, time, ux, uy, uz)
+        ux, uy, uz = look(frame.sky.axes, k)
+        low, high, ok = objects_at(frame.world, x, y, z, time, ux, uy, uz)
         k += 1
     return low, high, ok
 
@@ -276,7 +282,7 @@ def camera_set(frame, work, lens_low, lens_high, still):
     if same:
         sets[0, 0], sets[0, 1] = lens_low, lens_high
     else:
-        sets[0, 0], sets[0, 1], _ = surroundings(frame.world, ox, oy, oz, time)
+        sets[0, 0], sets[0, 1], _ = surroundings(frame, ox, oy, oz, time)
 
 
 @kernel

@@ -100,7 +100,7 @@ def render_some(frame, work, row_from, row_to, quantum, moves, xyz, replicate_y,
     window, matrices = frame.camera.window, frame.camera.matrices
     seed, replicate, index = frame.settings[SET_SEED], frame.settings[SET_REPLICATE], frame.settings[SET_INDEX]
     u_round, _ = pair(stream(seed, ROUND_PIXEL, replicate), index, TIME_AND_WAVELENGTH)
-    low, high, _ = surroundings(frame.world, matrices[0, 0, 3], matrices[0, 1, 3], matrices[0, 2, 3], 0.0)
+    low, high, _ = surroundings(frame, matrices[0, 0, 3], matrices[0, 1, 3], matrices[0, 2, 3], 0.0)
     for row in range(row_from, row_to):
         y = window[1] + row
         for column in range(window[2]):
