@@ -23,6 +23,6 @@ def kernel(function: Callable[..., Any] | None = None, *, parallel: bool = False
     """
 
     def compile_later(target: Callable[..., Any]) -> Any:
-        return numba.njit(target, cache=True, nogil=True, error_model="numpy", parallel=parallel)
+        return numba.njit(target, cache=True, nogil=True, error_model="numpy", parallel=parallel, no_cfunc_wrapper=True)
 
     return compile_later if function is None else compile_later(function)

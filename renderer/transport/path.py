@@ -50,12 +50,14 @@ from renderer.transport.layout import (
     UNMATCHED,
 )
 from renderer.transport.media import absorb, crossed, is_boundary, material_of, top_object, touching
-from renderer.transport.opaque import meet_opaque
+from renderer.transport.opaque import meet_mirror, opaque_way
 from renderer.transport.panes import meet_pane
 from renderer.transport.points import pair
-from renderer.transport.rough_boundary import meet_rough_boundary
+from renderer.transport.rough_boundary import boundary_way
+from renderer.transport.scattering import scatter
 from renderer.transport.state import draw, same_ray
 from renderer.transport.stokes import importance, scale_row
+from renderer.transport.surfaces import is_mirror
 from renderer.transport.vertices import place_vertex
 from renderer.transport.wavelengths import table_at
 
@@ -191,40 +193,63 @@ def cross(frame, work, k, hit, t, instance, primitive, crowded):
 
 
 @kernel
+def place(work, k, hit, error_m):
+    """Place the vertex at a hit, to be left by a ray that skips what was hit."""
+    px, py, pz, gx, gy, gz, sx, sy, sz, _tu, _tv, _item, _error_m = hit
+    reals = work.reals
+    place_vertex(work.vertex, px, py, pz, gx, gy, gz, sx, sy, sz, error_m, reals[k, DIRECTION],
+                 reals[k, DIRECTION + 1], reals[k, DIRECTION + 2])  # fmt: skip
+
+
+@kernel
+def skip(work, k, instance, primitive):
+    """Let the next ray not meet what it leaves."""
+    work.whole[k, SKIP_INSTANCE], work.whole[k, SKIP_PRIMITIVE] = instance, primitive
+
+
+@kernel
 def meet_clear(frame, work, k, hit, m1, instance, primitive, t, beyond):
-    """A boundary of a clear object, with what lies beyond it. Returns the slot to go on with."""
-    reals, whole, objects = work.reals, work.whole, frame.objects
+    """A boundary of a clear object, with what lies beyond it: (slot to go on with, whether to scatter, way drawn)."""
+    objects = frame.objects
     px, py, pz, gx, gy, gz, sx, sy, sz, _tu, _tv, item, error_m = hit
     low, high, _ok, last_t, last_instance, last_primitive, _i, _p, _t, _u, _v = beyond
     m2 = material_of(objects, top_object(objects, low, high))
     if m1 == m2:
         work.sets[k, 0], work.sets[k, 1] = low, high
         same_ray(work, k, last_t, last_instance, last_primitive)
-        return k
+        return k, False, 0.0, 0.0, 0.0
     error_through = error_m + (last_t - t)
     if is_rough(frame.materials, m1, m2, objects.roughness[item], work.lanes):
-        place_vertex(work.vertex, px, py, pz, gx, gy, gz, sx, sy, sz, error_through, reals[k, DIRECTION],
-                     reals[k, DIRECTION + 1], reals[k, DIRECTION + 2])  # fmt: skip
-        whole[k, SKIP_INSTANCE], whole[k, SKIP_PRIMITIVE] = instance, primitive
-        return meet_rough_boundary(frame, work, k, objects.roughness[item], m1, m2, low, high)
-    return meet_boundary(frame, work, k, m1, m2, (px, py, pz), (gx, gy, gz), (sx, sy, sz), error_m, error_through,
-                         instance, primitive, low, high)  # fmt: skip
+        place(work, k, hit, error_through)
+        skip(work, k, instance, primitive)
+        wx, wy, wz = boundary_way(frame, work, k, objects.roughness[item], m1, m2)
+        return k, True, wx, wy, wz
+    k = meet_boundary(frame, work, k, m1, m2, (px, py, pz), (gx, gy, gz), (sx, sy, sz), error_m, error_through,
+                      instance, primitive, low, high)  # fmt: skip
+    return k, False, 0.0, 0.0, 0.0
 
 
 @kernel
 def meet_other(frame, work, k, hit, m1, instance, primitive, t):
-    """A hit that is no boundary: a pane, a light or an opaque surface. Returns the slot to go on with."""
-    reals, whole, objects = work.reals, work.whole, frame.objects
-    px, py, pz, gx, gy, gz, sx, sy, sz, tu, tv, item, error_m = hit
-    dx, dy, dz = reals[k, DIRECTION], reals[k, DIRECTION + 1], reals[k, DIRECTION + 2]
+    """A hit that is no boundary: a pane, a light or an opaque surface. Returns as `meet_clear`."""
+    objects = frame.objects
+    px, py, pz, gx, gy, gz, _sx, _sy, _sz, tu, tv, item, error_m = hit
     if objects.kind[item] == PANE:
-        return meet_pane(frame, work, k, item, m1, (px, py, pz), (gx, gy, gz), error_m, t, instance, primitive)
+        k = meet_pane(frame, work, k, item, m1, (px, py, pz), (gx, gy, gz), error_m, t, instance, primitive)
+        return k, False, 0.0, 0.0, 0.0
     if objects.kind[item] == LIGHT:
-        meet_light(frame, work, k, item, dot(gx, gy, gz, dx, dy, dz), instance, primitive, t)
-        return k - 1
-    place_vertex(work.vertex, px, py, pz, gx, gy, gz, sx, sy, sz, error_m, dx, dy, dz)
-    whole[k, SKIP_INSTANCE], whole[k, SKIP_PRIMITIVE] = instance, primitive
-    return meet_opaque(frame, work, k, objects.surface[item], tu, tv)
+        reals = work.reals
+        facing = dot(gx, gy, gz, reals[k, DIRECTION], reals[k, DIRECTION + 1], reals[k, DIRECTION + 2])
+        meet_light(frame, work, k, item, facing, instance, primitive, t)
+        return k - 1, False, 0.0, 0.0, 0.0
+    place(work, k, hit, error_m)
+    skip(work, k, instance, primitive)
+    surface = objects.surface[item]
+    if is_mirror(frame.surfaces, surface):
+        meet_mirror(frame, work, k, surface, tu, tv)
+        return k, False, 0.0, 0.0, 0.0
+    wx, wy, wz = opaque_way(frame, work, k, surface, tu, tv)
+    return k, True, wx, wy, wz
 
 
 @kernel
@@ -254,15 +279,23 @@ def step(frame, work, k):
     if instance < 0:
         escape(frame, work, k)
         return k - 1
+    low, high = work.sets[k, 0], work.sets[k, 1]
     hit = hit_of(frame, work, k, instance, primitive, u, v, t)
-    if is_boundary(frame.objects.kind[hit[11]]):
+    clear = is_boundary(frame.objects.kind[hit[11]])
+    if clear:
         beyond = cross(frame, work, k, hit, t, instance, primitive, crowded)
-        if beyond[6] < 0:
-            return meet_clear(frame, work, k, hit, m1, instance, primitive, t, beyond)
-        # Something that is no boundary lies on the boundary: it is met in the material of this side.
-        instance, primitive, t = beyond[6], beyond[7], beyond[8]
-        hit = hit_of(frame, work, k, instance, primitive, beyond[9], beyond[10], t)
-    return meet_other(frame, work, k, hit, m1, instance, primitive, t)
+        if beyond[6] >= 0:
+            # Something that is no boundary lies on the boundary: it is met in the material of this side.
+            instance, primitive, t, clear = beyond[6], beyond[7], beyond[8], False
+            hit = hit_of(frame, work, k, instance, primitive, beyond[9], beyond[10], t)
+        else:
+            low, high = beyond[0], beyond[1]
+            k, scatters, wx, wy, wz = meet_clear(frame, work, k, hit, m1, instance, primitive, t, beyond)
+    if not clear:
+        k, scatters, wx, wy, wz = meet_other(frame, work, k, hit, m1, instance, primitive, t)
+    if scatters:
+        return scatter(frame, work, k, wx, wy, wz, low, high)
+    return k
 
 
 @kernel

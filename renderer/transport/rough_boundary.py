@@ -1,4 +1,4 @@
-"""A rough boundary between two materials: lit from both sides, then reflected from or refracted through by chance."""
+"""A rough boundary between two materials, where a path meets it: it reflects or refracts by chance."""
 
 from __future__ import annotations
 
@@ -6,7 +6,6 @@ import math
 
 from renderer.base.jit import kernel
 from renderer.base.vectors import dot
-from renderer.transport.direct import light_vertex
 from renderer.transport.layout import (
     ALPHA,
     BRANCH_POINT,
@@ -21,12 +20,10 @@ from renderer.transport.layout import (
     VIEW,
 )
 from renderer.transport.microfacet import visible_normal
-from renderer.transport.opaque import scatter_on
 from renderer.transport.state import (
     draw,
     first_kind,
 )
-from renderer.transport.vertices import from_vertex
 from renderer.transport.wavelengths import table_at
 
 
@@ -51,8 +48,8 @@ def draw_rough_way(vertex, n_v, n_w, u, v, u_way):
 
 
 @kernel
-def meet_rough_boundary(frame, work, k, roughness, m1, m2, low, high):
-    """A rough clear boundary at a placed vertex: light it from both sides, then reflect or refract by chance."""
+def boundary_way(frame, work, k, roughness, m1, m2):
+    """Set what a rough boundary is like at the placed vertex; gives a direction drawn there, in the vertex's frame."""
     vertex, materials = work.vertex, frame.materials
     vertex[IS_INTERFACE], vertex[ALPHA] = 1.0, roughness * roughness
     for lane in range(4):
@@ -63,12 +60,4 @@ def meet_rough_boundary(frame, work, k, roughness, m1, m2, low, high):
     wx, wy, wz = draw_rough_way(vertex, vertex[INDEX_HERE], vertex[INDEX_BEYOND], u, v, u_way)
     first_kind(work, k, REFLECTED if wz > 0.0 else TRANSMITTED)
     work.whole[k, INTERFACES] += 1
-    light_vertex(frame, work, k, work.sets[k, 0], work.sets[k, 1], low, high)
-    if wz == 0.0:
-        return k - 1
-    dx, dy, dz = from_vertex(vertex, wx, wy, wz)
-    if not scatter_on(work, k, dx, dy, dz):
-        return k - 1
-    if wz < 0.0:
-        work.sets[k, 0], work.sets[k, 1] = low, high
-    return k
+    return wx, wy, wz
