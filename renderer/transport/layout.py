@@ -69,7 +69,7 @@ SET_MAX_INTERFACES = 4
 N_SETTINGS = 5
 
 SMOOTH_BELOW = 0.02  # roughness under which an interface, or a mirror, counts as smooth
-MAX_DEPTH = 8192  # events of any kind before a path is cut off; the power lost is counted
+MAX_DEPTH = 100_000  # events of any kind before a path is cut off; the power lost is counted
 
 # vertex: what a rough scattering needs to know of where it happens, one array a block of pixels
 FRAME = 0  # 9: tangent, bitangent, shading normal (on the side of the ray)

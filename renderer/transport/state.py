@@ -105,7 +105,7 @@ def ratio_sum(reals, k):
 @kernel
 def dimension(work, k, purpose):
     """The sample dimension of a purpose at a path's present event."""
-    return (work.whole[k, BRANCH] << 20) | (work.whole[k, DEPTH] << 4) | purpose
+    return (work.whole[k, BRANCH] << 24) | (work.whole[k, DEPTH] << 4) | purpose
 
 
 @kernel

@@ -19,7 +19,7 @@ class Render(Table):
     splits: Annotated[int, Whole(0, 8)] = key(
         2, "Interfaces at which both what is reflected and what passes is followed", "2"
     )
-    max_interfaces: Annotated[int, Whole(1, 65_536)] = key(256, "Interfaces after which a path ends", "256")
+    max_interfaces: Annotated[int, Whole(1, 65_536)] = key(2048, "Interfaces after which a path ends", "2048")
     seed: Annotated[int, Whole(0, 2**31 - 1)] = key(0, "Another number gives another pattern of noise", "0")
     wavelengths: Annotated[tuple[float, ...], Numbers("nm", Bounds(380, 780), most=64)] = key(
         (), "Render these wavelengths alone", "[589.3]", "all of 380-780 nm"
