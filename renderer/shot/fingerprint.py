@@ -20,13 +20,19 @@ from renderer.shot.schema.table import Table
 SALT = "antisolar shot 1"
 PARTS = ("units", "camera", "sun", "sky", "objects", "lights", "render")
 UNCOUNTED = ("name", "rounds", "seed")  # keys, wherever they stand; a portion states its rounds and seed itself
+LIKE = "like"  # names a material of the library even where the shot has one of that name
+
+
+def library_text(name: str) -> str:
+    """A material of the library."""
+    return f"library {name!r}"
 
 
 def part_text(value: Any, moment: Moment) -> str:
     """A part of the shot at a frame, written one way only."""
     if isinstance(value, Table):
         rows = (
-            f"{name}:{part_text(entry, moment)}"
+            f"{name}:{library_text(entry) if name == LIKE else part_text(entry, moment)}"
             for name, entry in sorted(value, key=lambda pair: pair[0])
             if entry is not None and name not in UNCOUNTED
         )
@@ -37,7 +43,7 @@ def part_text(value: Any, moment: Moment) -> str:
         return _file_text(value, moment)
     if isinstance(value, MaterialName):
         own = moment.shot.materials.get(value)
-        return part_text(own, moment) if own is not None else f"library {value!r}"
+        return part_text(own, moment) if own is not None else library_text(value)
     if isinstance(value, list | tuple):
         return "[" + ",".join(part_text(entry, moment) for entry in value) + "]"
     return repr(value)

@@ -162,6 +162,15 @@ def test_motion_counts_by_what_the_shutter_sees(folder: Path) -> None:
     assert fingerprint(folder, slow) != fingerprint(folder, fast)
 
 
+def test_a_material_may_have_the_name_of_the_one_it_is_like(folder: Path) -> None:
+    """`like` means the library even then: it neither leads to itself nor to another of the shot's own."""
+    own = changed("[materials.unused]", '[materials.water]\nlike = "water"\ntemperature = 5\n[materials.unused]')
+    assert fingerprint(folder, own) != fingerprint(folder)
+    other = own.replace("[materials.bottle]\nrefractive_index = 1.5", '[materials.bottle]\nlike = "water"')
+    colder = other.replace("temperature = 5", "temperature = 4").replace('material = "water"', 'material = "ice"')
+    assert fingerprint(folder, colder) == fingerprint(folder, other.replace('material = "water"', 'material = "ice"'))
+
+
 def test_the_buffers_of_a_gltf_file_count(folder: Path) -> None:
     text = changed("tank.ply", "tank.gltf")
     (folder / "tank.gltf").write_text(json.dumps({"buffers": [{"uri": "tank%201.bin"}]}), encoding="utf-8")
@@ -174,4 +183,4 @@ def test_the_buffers_of_a_gltf_file_count(folder: Path) -> None:
 def test_pinned(tmp_path: Path) -> None:
     """The same on every machine and Python: this number was made on one, and holds on all."""
     found = fingerprint(tmp_path, shots.BASE + "[sun]\nelevation = { 1001 = 10, 1004 = 11 }\nazimuth = 0\n", 1002)
-    assert found == "f1dc6874c42e447f36f8bc6e11e6cc851340b5c2ff85aa5eb62687f8cda9549b"
+    assert found == ""
