@@ -1,4 +1,4 @@
-"""The contract between Python and kernels: named tuples of arrays of one fixed type each, and `pack`, which makes them."""
+"""The contract between Python and kernels: named tuples of arrays of fixed types, and `pack`, which makes them."""
 
 from renderer.arrays.packing import pack
 

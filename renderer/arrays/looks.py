@@ -1,4 +1,4 @@
-"""What objects are made of, as kernels see it: clear materials, opaque surfaces, textures, and which object has which."""
+"""What objects are made of, as kernels see it: clear materials, opaque surfaces, textures, and who has which."""
 
 from __future__ import annotations
 
@@ -39,7 +39,8 @@ class Objects(NamedTuple):
 class Materials(NamedTuple):
     """One row a clear material; row 0 is air, whose index is 1: every index is relative to air."""
 
-    index: npt.NDArray[np.float64]  # (n_materials, 401), 380 to 780 nm, one entry a nanometre
+    # (n_materials, 401), 380 to 780 nm, one entry a nanometre; hides a tuple's own method
+    index: npt.NDArray[np.float64]  # type: ignore[assignment]
     absorption_per_m: npt.NDArray[np.float64]  # (n_materials, 401), base e
     dispersive: npt.NDArray[np.bool_]  # (n_materials,)
 

@@ -8,7 +8,9 @@ import numpy as np
 import numpy.typing as npt
 
 
-def pack(values: npt.ArrayLike, dtype: npt.DTypeLike = np.float64, shape: tuple[int, ...] | None = None) -> npt.NDArray[Any]:
+def pack(
+    values: npt.ArrayLike, dtype: npt.DTypeLike = np.float64, shape: tuple[int, ...] | None = None
+) -> npt.NDArray[Any]:
     """`values` as a read-only, C-ordered array of `dtype`, in `shape` where one is given.
 
     A view is copied, so that nobody can change a scene under a running kernel.

@@ -14,7 +14,7 @@ import numpy.typing as npt
 
 
 class Spectrum(NamedTuple):
-    """Segments of u in rising order, (n_segments,) each; within a segment the density is constant, or all one wavelength.
+    """Segments of u in rising order, (n_segments,) each; within one the density is constant, or all one wavelength.
 
     `u_low` (n_segments + 1,) from 0 to 1; `low_nm`, `high_nm` the ends (equal for a mass); `weight`: what an emitter's
     value is multiplied by, that is 1/density [nm] for a stretch, 1/mass [1] for a line, and share of the range over

@@ -31,7 +31,7 @@ def kernel_fingerprint() -> str:
 
 
 def user_cache_folder() -> Path:
-    """The folder of this user's caches; ANTISOLAR_CACHE overrides it, and a temporary one serves where none can be written.
+    """The folder of this user's caches; ANTISOLAR_CACHE overrides it; a temporary one serves where it cannot be written.
 
     Follows the XDG base directory specification on Linux.
     """

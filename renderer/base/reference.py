@@ -29,10 +29,10 @@ BYTE_POINTER = ir.IntType(8).as_pointer()
 ZERO = ir.Constant(ir.IntType(32), 0)
 
 
-class Reference(types.Type):  # type: ignore[misc]
+class Reference(types.Type):
     """Numba's type of a reference to a tuple of type `target`."""
 
-    def __init__(self, target: types.Type) -> None:
+    def __init__(self, target: Any) -> None:
         self.target = target
         super().__init__(name=f"Reference({target})")
 
@@ -41,25 +41,25 @@ register_model(Reference)(models.OpaqueModel)
 
 
 @infer_getattr
-class ReferenceAttribute(AttributeTemplate):  # type: ignore[misc]
+class ReferenceAttribute(AttributeTemplate):
     """The type of a field: a reference where the field is itself a named tuple."""
 
     key = Reference
 
-    def generic_resolve(self, reference: Reference, name: str) -> types.Type | None:
+    def generic_resolve(self, reference: Any, name: str) -> Any:  # type: ignore[override]
         """Type of the field `name`, None where there is none."""
         if name not in reference.target.fields:
             return None
         return field_type(reference.target.types[reference.target.fields.index(name)])
 
 
-def field_type(kind: types.Type) -> types.Type:
+def field_type(kind: Any) -> Any:
     """What reading a field gives."""
     return Reference(kind) if isinstance(kind, types.BaseNamedTuple) else kind
 
 
-@lower_getattr_generic(Reference)  # type: ignore[untyped-decorator]
-def read_field(context: Any, builder: Any, reference: Reference, value: Any, name: str) -> Any:
+@lower_getattr_generic(Reference)
+def read_field(context: Any, builder: Any, reference: Any, value: Any, name: str) -> Any:
     """The address of a nested tuple, or the value of an array or number."""
     index = reference.target.fields.index(name)
     whole = builder.bitcast(value, context.get_value_type(reference.target).as_pointer())
@@ -69,21 +69,21 @@ def read_field(context: Any, builder: Any, reference: Reference, value: Any, nam
     return builder.load(place)
 
 
-def unowned(context: Any, builder: Any, kind: types.Type, value: Any) -> Any:
+def unowned(context: Any, builder: Any, kind: Any, value: Any) -> Any:
     """The value with every array's owner forgotten, so that no reader counts references (which threads would share)."""
     if isinstance(kind, types.Array):
         array = make_array(kind)(context, builder, value=value)
         array.meminfo = cgutils.get_null_value(array.meminfo.type)
         return array._getvalue()
-    if isinstance(kind, types.BaseNamedTuple):
+    if hasattr(kind, "fields"):
         for i, part in enumerate(kind.types):
             own = builder.extract_value(value, i)
             value = builder.insert_value(value, unowned(context, builder, part, own), i)
     return value
 
 
-@intrinsic  # type: ignore[untyped-decorator]
-def refer(typing_context: Any, value: types.Type) -> Any:
+@intrinsic
+def refer(typing_context: Any, value: Any) -> Any:
     """A reference to a named tuple (of arrays, numbers and such tuples), valid until the calling kernel returns."""
 
     def build(context: Any, builder: Any, signature: Any, arguments: Any) -> Any:

@@ -6,7 +6,7 @@ from __future__ import annotations
 from typing import Any
 
 from renderer.base.jit import kernel  # noqa: F401  (settles cache folder and processor level before numba is imported)
-from llvmlite import ir  # type: ignore[import-untyped]
+from llvmlite import ir
 from numba import types
 from numba.core import cgutils
 from numba.extending import intrinsic

@@ -4,9 +4,10 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass
-from typing import TYPE_CHECKING, Any
+from typing import Any, Protocol
 
 import numpy as np
+import numpy.typing as npt
 
 from renderer.arrays.frame import Frame
 from renderer.arrays.world import STEPS
@@ -31,13 +32,31 @@ from renderer.transport.threads import over_rows
 from renderer.transport.wavelengths import draw_lanes
 from renderer.transport.work import new_work
 
-if TYPE_CHECKING:
-    from renderer.pictures.sums import Sums
-
+Counts = npt.NDArray[np.int64]
 N_KINDS = len(KINDS)
 MOST = 2.0**58  # quanta of one sample; sums of rounds hold 16 times as many
 HALF_PLANE = 1 << 24  # added to rows and columns, which overscan makes negative, to name a pixel by one whole number
 ROUND_PIXEL = 0xFFFFFFFFFFFFFFFF  # stands for the pixel in the key of what a round has in common
+
+
+class Sums(Protocol):
+    """What rounds are added to, all int64: see renderer/pictures/sums.py, which transport does not know."""
+
+    @property
+    def xyz(self) -> Counts:
+        """(rows, columns, 3)."""
+
+    @property
+    def replicate_y(self) -> Counts:
+        """(8, rows, columns)."""
+
+    @property
+    def kinds(self) -> Counts:
+        """(rows, columns, kinds, 3)."""
+
+    @property
+    def bins(self) -> Counts:
+        """(n_bins, rows, columns)."""
 
 
 @dataclass(frozen=True)
