@@ -31,7 +31,7 @@ def kernel_fingerprint() -> str:
 
 
 def user_cache_folder() -> Path:
-    """The folder of this user's caches; ANTISOLAR_CACHE overrides it; a temporary one serves where it cannot be written.
+    """The folder of this user's caches; ANTISOLAR_CACHE overrides it; else a temporary one.
 
     Follows the XDG base directory specification on Linux.
     """
