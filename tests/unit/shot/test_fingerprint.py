@@ -183,4 +183,4 @@ def test_the_buffers_of_a_gltf_file_count(folder: Path) -> None:
 def test_pinned(tmp_path: Path) -> None:
     """The same on every machine and Python: this number was made on one, and holds on all."""
     found = fingerprint(tmp_path, shots.BASE + "[sun]\nelevation = { 1001 = 10, 1004 = 11 }\nazimuth = 0\n", 1002)
-    assert found == ""
+    assert found == "53b68c9feef5de78606ee1372168a600792214a8ed5ea6cea8710948d62cb88e"
