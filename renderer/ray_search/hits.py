@@ -9,7 +9,7 @@ import numpy as np
 from renderer.arrays.world import NONE, NORMALS, OBJECT, UVS
 from renderer.base.jit import kernel
 from renderer.base.vectors import cross, dot, unit
-from renderer.ray_search.places import carry, matrix_at, turn_normal
+from renderer.ray_search.places import carry, matrix_at, trees_of, turn_normal
 
 EPS = 2.0**-52
 POINT_ERROR = 16.0 * EPS  # of a point from its corners, through a matrix and back, over the sizes that enter
@@ -30,7 +30,7 @@ def corners_of(world, m, primitive):
 @kernel
 def triangle_corners(world, instance, primitive, time):
     """The corners of a triangle in the world at a time, as nine numbers. [m]"""
-    m, _, _ = matrix_at(world, instance, time)
+    m, _, _ = matrix_at(trees_of(world), np.int64(instance), time)
     return corners_of(world, m, primitive)
 
 
@@ -103,7 +103,7 @@ def hit_frame(world, instance, primitive, u, v, ox, oy, oz, dx, dy, dz, t, time)
     not from the ray, so its error does not grow with distance; the ray's own rounding is added so that boundaries
     that fall together can be told by it.
     """
-    m, w, sign = matrix_at(world, instance, time)
+    m, w, sign = matrix_at(trees_of(world), np.int64(instance), time)
     item = np.int64(world.instances[instance, OBJECT])
     along = RAY_ERROR * (abs(ox) + abs(oy) + abs(oz) + abs(t))
     if world.faces[primitive, 1] < 0:

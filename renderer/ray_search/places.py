@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from renderer.arrays.world import MATRIX, STEPS
 from renderer.base.jit import kernel
+from renderer.ray_search.lanes import pointers, real_at, word_at
 
 
 @kernel
@@ -48,12 +49,12 @@ def inverse(m):
 
 
 @kernel
-def row(matrices, r, k):
-    """Twelve numbers of a row of matrices, from column k."""
-    m = matrices
+def row(reals, at):
+    """Twelve numbers that begin `at` elements behind a pointer."""
     return (
-        m[r, k], m[r, k + 1], m[r, k + 2], m[r, k + 3], m[r, k + 4], m[r, k + 5],
-        m[r, k + 6], m[r, k + 7], m[r, k + 8], m[r, k + 9], m[r, k + 10], m[r, k + 11],
+        real_at(reals, at), real_at(reals, at + 1), real_at(reals, at + 2), real_at(reals, at + 3),
+        real_at(reals, at + 4), real_at(reals, at + 5), real_at(reals, at + 6), real_at(reals, at + 7),
+        real_at(reals, at + 8), real_at(reals, at + 9), real_at(reals, at + 10), real_at(reals, at + 11),
     )  # fmt: skip
 
 
@@ -64,16 +65,25 @@ def mixed(a, b, f):
 
 
 @kernel
-def matrix_at(world, instance, time):
+def trees_of(world):
+    """What a search reads of a world, as pointers: nodes, packs, balls, placed, instances, matrices, roots, touch_m."""
+    return pointers(
+        world.nodes, world.packs, world.balls, world.placed, world.instances, world.matrices, world.roots, world.touch_m
+    )
+
+
+@kernel
+def matrix_at(trees, instance, time):
     """An instance's matrix to the world and back at a time in [0, 1], and the sign of its determinant."""
-    r, steps = world.instances[instance, MATRIX], world.instances[instance, STEPS]
-    matrices = world.matrices
+    instances, matrices = trees[4], trees[5]
+    at = word_at(instances, 8 * instance + MATRIX) * 25
+    steps = word_at(instances, 8 * instance + STEPS)
     if steps == 1:
-        return row(matrices, r, 0), row(matrices, r, 12), matrices[r, 24]
+        return row(matrices, at), row(matrices, at + 12), real_at(matrices, at + 24)
     place = min(max(time, 0.0), 1.0) * (steps - 1)
     i = min(int(place), steps - 2)
     f = place - i
-    a, b = row(matrices, r + i, 0), row(matrices, r + i + 1, 0)
+    a, b = row(matrices, at + 25 * i), row(matrices, at + 25 * i + 25)
     m = (
         mixed(a[0], b[0], f), mixed(a[1], b[1], f), mixed(a[2], b[2], f), mixed(a[3], b[3], f),
         mixed(a[4], b[4], f), mixed(a[5], b[5], f), mixed(a[6], b[6], f), mixed(a[7], b[7], f),
@@ -81,3 +91,22 @@ def matrix_at(world, instance, time):
     )  # fmt: skip
     w, det = inverse(m)
     return m, w, 1.0 if det > 0.0 else -1.0
+
+
+@kernel
+def steepest(dx, dy, dz):
+    """The axis along which a direction is longest."""
+    ax, ay, az = abs(dx), abs(dy), abs(dz)
+    if ax > ay and ax > az:
+        return 0
+    return 1 if ay > az else 2
+
+
+@kernel
+def permuted(axis, x, y, z):
+    """The three numbers turned round so that `axis` is the last."""
+    if axis == 0:
+        return y, z, x
+    if axis == 1:
+        return z, x, y
+    return x, y, z

@@ -7,16 +7,34 @@ import math
 import numpy as np
 
 from renderer.arrays.looks import CLEAR, SHEET
-from renderer.arrays.world import OBJECT, ROOT
+from renderer.arrays.world import NOTHING, ROOT, SPHERES
 from renderer.base.jit import kernel
 from renderer.base.vectors import dot
 from renderer.ray_search.hits import hit_frame
+from renderer.ray_search.lanes import (
+    BALL_WIDTH,
+    PACK_WIDTH,
+    children_hit,
+    entry,
+    first_bit,
+    get,
+    lane,
+    new_room,
+    new_stack,
+    number,
+    prefetch,
+    put,
+    single_bits,
+    spheres_hit,
+    triangles_hit,
+    word_at,
+)
 from renderer.ray_search.object_set import set_item, set_with, set_without
-from renderer.ray_search.places import carry, matrix_at, turn
-from renderer.ray_search.shapes import sphere_hit, steepest, triangle_hit
-from renderer.ray_search.stack import get, new_stack, put
+from renderer.ray_search.places import carry, matrix_at, permuted, steepest, trees_of, turn
 
 ROUNDING = 1.5e-11  # share of a ray's numbers that joins touch_m: see `hits.error_of` for where both come from
+OUTWARD = 1.3e-7  # relative: more than twice what rounding to float32 loses
+LATER = 1.0 + 4.0 * 2.0**-23
 MAX_WALK = 4096  # hits that a point query follows
 NEAR_EDGE = 1e-9  # barycentric, and cosine to the surface, under which a crossing may be counted wrongly
 
@@ -34,7 +52,7 @@ def farther(t, instance, primitive, t2, instance2, primitive2):
 @kernel
 def offered(best, limits, t, instance, primitive, u, v):
     """The best hit so far (t, instance, primitive, u, v, next t) after one more is found."""
-    t_max, _, _, t_after, i_after, p_after, _ = limits
+    t_max, _, _, t_after, i_after, p_after, _, _ = limits
     if not (t >= t_after and t <= t_max) or not farther(t, instance, primitive, t_after, i_after, p_after):
         return best
     if best[1] >= 0 and farther(t, instance, primitive, best[0], best[1], best[2]):
@@ -44,127 +62,181 @@ def offered(best, limits, t, instance, primitive, u, v):
 
 
 @kernel
-def box_entry(boxes, node, ox, oy, oz, ix, iy, iz, reach):
-    """Distance at which a ray enters a node's box, or infinity when it misses it or enters beyond `reach`."""
-    x0, x1 = (boxes[node, 0] - ox) * ix, (boxes[node, 3] - ox) * ix
-    y0, y1 = (boxes[node, 1] - oy) * iy, (boxes[node, 4] - oy) * iy
-    z0, z1 = (boxes[node, 2] - oz) * iz, (boxes[node, 5] - oz) * iz
-    enter = max(max(min(x0, x1), min(y0, y1)), max(min(z0, z1), 0.0))
-    leave = min(min(max(x0, x1), max(y0, y1)), max(z0, z1))
-    # Rounded outward by far more than float64 loses, so that no hit is lost between box and triangle.
-    if enter <= leave * (1.0 + 1e-9) and enter * (1.0 - 1e-9) <= reach:
-        return enter
-    return math.inf
-
-
-@kernel
 def inverted(d):
     """One over a number, finite where it is zero, so that a ray in a box's plane makes no not-a-number."""
-    if abs(d) < 1e-290:
-        return math.copysign(1e290, d)
+    if abs(d) < 1e-28:
+        return 1e28 if d >= 0.0 else -1e28
     return 1.0 / d
 
 
 @kernel
-def meet_item(world, item, instance, ox, oy, oz, dx, dy, dz, axis, sx, sy, sz, limits, best):
-    """The best hit after one triangle or sphere of a leaf."""
-    c = world.corners
-    primitive = np.int64(world.items[item, 1])
-    if instance < 0:
-        instance = np.int64(world.items[item, 0])
-    skipped = instance == limits[1] and primitive == limits[2]
-    if world.faces[primitive, 1] >= 0:
-        if skipped:
-            return best
-        t, u, v = triangle_hit(
-            axis, sx, sy, sz,
-            c[item, 0] - ox, c[item, 1] - oy, c[item, 2] - oz,
-            c[item, 3] - ox, c[item, 4] - oy, c[item, 5] - oz,
-            c[item, 6] - ox, c[item, 7] - oy, c[item, 8] - oz,
-        )  # fmt: skip
-        return offered(best, limits, t, instance, primitive, u, v)
-    near, far = sphere_hit(ox - c[item, 0], oy - c[item, 1], oz - c[item, 2], dx, dy, dz, c[item, 3])
-    if not skipped:
-        best = offered(best, limits, near, instance, primitive, 0.0, 0.0)
-    return offered(best, limits, far, instance, primitive, 0.0, 0.0)
+def box_ray(ox, oy, oz, ix, iy, iz):
+    """A ray for the test of boxes, rounded so that they only grow: see `lanes.children_hit`.
+
+    (ix, iy, iz): one over the direction. Low planes are met from an origin that is rounded up, high ones from one that
+    is rounded down, and the far ones a little later: by more than the roundings to float32 lose on both sides.
+    """
+    near = (
+        np.int64(0) if ix >= 0.0 else np.int64(8),
+        np.int64(16) if iy >= 0.0 else np.int64(24),
+        np.int64(32) if iz >= 0.0 else np.int64(40),
+    )
+    x, y, z = np.float64(np.float32(ix)), np.float64(np.float32(iy)), np.float64(np.float32(iz))
+    ax, ay, az = -ox * x, -oy * y, -oz * z
+    bx, by, bz = OUTWARD * abs(ax), OUTWARD * abs(ay), OUTWARD * abs(az)
+    return near, (
+        np.float32(ax - bx), np.float32(ay - by), np.float32(az - bz),
+        np.float32((ax + bx) * LATER), np.float32((ay + by) * LATER), np.float32((az + bz) * LATER),
+        np.float32(x), np.float32(y), np.float32(z),
+        np.float32(x * LATER), np.float32(y * LATER), np.float32(z * LATER),
+    )  # fmt: skip
 
 
 @kernel
-def walk(world, root, instance, ox, oy, oz, dx, dy, dz, limits, any_will_do, best):
+def rounded_up(reach):
+    """A distance as float32, never smaller."""
+    return np.float32(reach * (1.0 + OUTWARD))
+
+
+@kernel
+def push_children(nodes, packs, mask, room, stack, top):
+    """Put the children whose bits are set on the stack, the nearest on top; gives the new top."""
+    bottom = top
+    while mask != 0:
+        found = entry(room, first_bit(mask))
+        prefetch(nodes, packs, (found << 32) >> 32)
+        mask &= mask - 1
+        k = top
+        while k > bottom and get(stack, k - 1) < found:
+            put(stack, k, get(stack, k - 1))
+            k -= 1
+        put(stack, k, found)
+        top += 1
+    return top
+
+
+@kernel
+def take_triangles(packs, at, mask, instance, limits, best, room):
+    """The best hit after the triangles of a pack whose bits are set."""
+    while mask != 0:
+        k = first_bit(mask)
+        mask &= mask - 1
+        owner = instance if instance >= 0 else number(packs, at, k)
+        primitive = number(packs, at, k + 8)
+        if owner != limits[1] or primitive != limits[2]:
+            det = lane(room, k + 24)
+            u, v = lane(room, k + 8) / det, lane(room, k + 16) / det
+            best = offered(best, limits, lane(room, k), owner, primitive, u, v)
+    return best
+
+
+@kernel
+def take_spheres(balls, at, mask, instance, limits, best, room):
+    """The best hit after the spheres of a pack whose bits are set: the near side of each, and the far one."""
+    while mask != 0:
+        k = first_bit(mask)
+        mask &= mask - 1
+        owner = instance if instance >= 0 else number(balls, at, k)
+        primitive = number(balls, at, k + 8)
+        if owner != limits[1] or primitive != limits[2]:
+            best = offered(best, limits, lane(room, k), owner, primitive, 0.0, 0.0)
+        best = offered(best, limits, lane(room, k + 8), owner, primitive, 0.0, 0.0)
+    return best
+
+
+@kernel
+def meet_spheres(balls, pack, instance, origin, direction, limits, best, room):
+    """The best hit after a pack of spheres."""
+    mask = spheres_hit(balls, pack, origin, direction, limits[3], best[0] + limits[6], room)
+    if mask != 0:
+        return take_spheres(balls, BALL_WIDTH * pack + 32, mask, instance, limits, best, room)
+    return best
+
+
+@kernel
+def walk(trees, root, instance, ox, oy, oz, dx, dy, dz, limits, best):
     """The best hit after all primitives of one tree, or after the first hit where any will do."""
+    nodes, packs, balls = trees[0], trees[1], trees[2]
     ix, iy, iz = inverted(dx), inverted(dy), inverted(dz)
+    near, ray = box_ray(ox, oy, oz, ix, iy, iz)
     axis = steepest(dx, dy, dz)
-    if axis == 0:
-        sx, sy, sz = dy / dx, dz / dx, 1.0 / dx
-    elif axis == 1:
-        sx, sy, sz = dz / dy, dx / dy, 1.0 / dy
-    else:
-        sx, sy, sz = dx / dz, dy / dz, 1.0 / dz
-    stack = new_stack()
-    put(stack, 0, root)
-    top = 1
-    while top > 0:
-        top -= 1
-        node = get(stack, top)
-        reach = best[0] + limits[6]
-        if box_entry(world.boxes, node, ox, oy, oz, ix, iy, iz, reach) == math.inf:
-            continue
-        left, count = np.int64(world.links[node, 0]), np.int64(world.links[node, 1])
-        if count > 0:
-            for item in range(left, left + count):
-                best = meet_item(world, item, instance, ox, oy, oz, dx, dy, dz, axis, sx, sy, sz, limits, best)
-            if any_will_do and best[1] >= 0:
+    px, py, _ = permuted(axis, dx, dy, dz)
+    _, _, scale = permuted(axis, ix, iy, iz)
+    shear = (px * scale, py * scale, scale)
+    origin = permuted(axis, ox, oy, oz)
+    axes = permuted(axis, np.int64(0), np.int64(24), np.int64(48))
+    stack, entries, room = new_stack(), new_room(), new_room()
+    top, child = np.int64(0), root
+    reach = rounded_up(best[0] + limits[6])
+    while True:
+        if child >= 0:
+            mask = children_hit(nodes, child, near, ray, reach, entries)
+            if mask != 0 and mask & (mask - 1) == 0:
+                child = (entry(entries, first_bit(mask)) << 32) >> 32
+                continue
+            top = push_children(nodes, packs, mask, entries, stack, top)
+        else:
+            pack = -1 - child
+            if pack < SPHERES:
+                mask = triangles_hit(packs, pack, axes, origin, shear, limits[3], best[0] + limits[6], room)
+                if mask != 0:
+                    best = take_triangles(packs, PACK_WIDTH * pack + 72, mask, instance, limits, best, room)
+            else:
+                best = meet_spheres(balls, pack - SPHERES, instance, (ox, oy, oz), (dx, dy, dz), limits, best, room)
+            if limits[7] and best[1] >= 0:
                 return best
-            continue
-        a = box_entry(world.boxes, left, ox, oy, oz, ix, iy, iz, reach)
-        b = box_entry(world.boxes, left + 1, ox, oy, oz, ix, iy, iz, reach)
-        near, far = (left, left + 1) if a <= b else (left + 1, left)
-        if max(a, b) < math.inf:
-            put(stack, top, far)
-            top += 1
-        if min(a, b) < math.inf:
-            put(stack, top, near)
-            top += 1
-    return best
+            reach = rounded_up(best[0] + limits[6])
+        limit = single_bits(reach)
+        found = np.int64(-1)
+        while top > 0 and found < 0:
+            top -= 1
+            found = get(stack, top)
+            if (found >> 32) > limit:
+                found = np.int64(-1)
+        if found < 0:
+            return best
+        child = (found << 32) >> 32
 
 
 @kernel
-def walk_instances(world, ox, oy, oz, dx, dy, dz, time, limits, any_will_do, best):
+def walk_instances(trees, ox, oy, oz, dx, dy, dz, time, limits, best):
     """The best hit after all instances that have a tree of their own."""
-    ix, iy, iz = inverted(dx), inverted(dy), inverted(dz)
-    stack = new_stack()
-    put(stack, 0, np.int64(world.roots[1]))
-    top = 1
-    while top > 0:
+    near, ray = box_ray(ox, oy, oz, inverted(dx), inverted(dy), inverted(dz))
+    stack, entries = new_stack(), new_room()
+    put(stack, 0, word_at(trees[6], 1) & np.int64(0xFFFFFFFF))
+    top = np.int64(1)
+    while top > 0 and not (limits[7] and best[1] >= 0):
         top -= 1
-        node = get(stack, top)
-        if box_entry(world.boxes, node, ox, oy, oz, ix, iy, iz, best[0] + limits[6]) == math.inf:
+        found = get(stack, top)
+        child = (found << 32) >> 32
+        reach = rounded_up(best[0] + limits[6])
+        if (found >> 32) > single_bits(reach):
             continue
-        left, count = np.int64(world.links[node, 0]), np.int64(world.links[node, 1])
-        if count == 0:
-            put(stack, top, left)
-            put(stack, top + 1, left + 1)
-            top += 2
-        for item in range(left, left + count):
-            instance = np.int64(world.items[item, 0])
-            _, w, _ = matrix_at(world, instance, time)
-            px, py, pz = carry(w, ox, oy, oz)
-            qx, qy, qz = turn(w, dx, dy, dz)
-            root = np.int64(world.instances[instance, ROOT])
-            best = walk(world, root, instance, px, py, pz, qx, qy, qz, limits, any_will_do, best)
-            if any_will_do and best[1] >= 0:
-                return best
+        if child >= 0:
+            mask = children_hit(trees[0], child, near, ray, reach, entries)
+            top = push_children(trees[0], trees[1], mask, entries, stack, top)
+            continue
+        instance = word_at(trees[3], -1 - child)
+        _, w, _ = matrix_at(trees, instance, time)
+        px, py, pz = carry(w, ox, oy, oz)
+        qx, qy, qz = turn(w, dx, dy, dz)
+        best = walk(
+            trees, word_at(trees[4], 8 * instance + ROOT), instance, px, py, pz, qx, qy, qz, limits, best
+        )  # fmt: skip
     return best
 
 
 @kernel
-def search(world, ox, oy, oz, dx, dy, dz, time, limits, any_will_do):
-    """The best hit in the whole world: (t, instance, primitive, u, v, t of the next)."""
+def search(trees, ox, oy, oz, dx, dy, dz, time, limits):
+    """The best hit in the whole world: (t, instance, primitive, u, v, t of the next); instance -1 for none."""
     best = (limits[0], np.int64(-1), np.int64(-1), 0.0, 0.0, math.inf)
-    if world.roots[0] >= 0:
-        best = walk(world, np.int64(world.roots[0]), np.int64(-1), ox, oy, oz, dx, dy, dz, limits, any_will_do, best)
-    if world.roots[1] >= 0 and not (any_will_do and best[1] >= 0):
-        best = walk_instances(world, ox, oy, oz, dx, dy, dz, time, limits, any_will_do, best)
+    if not limits[0] >= 0.0:
+        return best
+    root = word_at(trees[6], 0)
+    if root != NOTHING:
+        best = walk(trees, root, np.int64(-1), ox, oy, oz, dx, dy, dz, limits, best)
+    if word_at(trees[6], 1) != NOTHING and not (limits[7] and best[1] >= 0):
+        best = walk_instances(trees, ox, oy, oz, dx, dy, dz, time, limits, best)
     return best
 
 
@@ -184,9 +256,9 @@ def closest_hit(
     touch = world.touch_m[0] + ROUNDING * (abs(ox) + abs(oy) + abs(oz))
     limits = (
         np.float64(t_max), np.int64(skip_instance), np.int64(skip_primitive),
-        np.float64(t_after), np.int64(instance_after), np.int64(primitive_after), touch,
+        np.float64(t_after), np.int64(instance_after), np.int64(primitive_after), touch, False,
     )  # fmt: skip
-    t, instance, primitive, u, v, t_next = search(world, ox, oy, oz, dx, dy, dz, time, limits, False)
+    t, instance, primitive, u, v, t_next = search(trees_of(world), ox, oy, oz, dx, dy, dz, time, limits)
     if instance < 0:
         return math.inf, instance, primitive, u, v, False
     return t, instance, primitive, u, v, t_next - t <= touch
@@ -197,60 +269,22 @@ def any_hit(world, ox, oy, oz, dx, dy, dz, time, t_max, skip_instance, skip_prim
     """Some hit at a distance in (0, t_max), as (instance, primitive); (-1, -1) where there is none."""
     none = np.int64(1) << np.int64(40)
     limits = (
-        np.nextafter(np.float64(t_max), 0.0), np.int64(skip_instance), np.int64(skip_primitive), 0.0, none, none, 0.0
+        np.nextafter(np.float64(t_max), 0.0), np.int64(skip_instance), np.int64(skip_primitive),
+        0.0, none, none, 0.0, True,
     )  # fmt: skip
-    best = search(world, ox, oy, oz, dx, dy, dz, time, limits, True)
+    best = search(trees_of(world), ox, oy, oz, dx, dy, dz, time, limits)
     return best[1], best[2]
 
 
 @kernel
-def next_crossing(world, x, y, z, ux, uy, uz, time, t, instance, primitive):
-    """The next hit of a point query: (t, instance, primitive, object, cosine, whether it is plainly a crossing)."""
-    t, instance, primitive, u, v, _ = closest_hit(
-        world, x, y, z, ux, uy, uz, time, math.inf, -1, -1, t, instance, primitive
-    )
-    if instance < 0:
-        return t, instance, primitive, np.int64(-1), 0.0, True
+def crossing(world, instance, primitive, u, v, x, y, z, ux, uy, uz, t, time):
+    """A hit of a point query: (object, cosine between normal and ray, whether it is plainly a crossing)."""
     hit = hit_frame(world, instance, primitive, u, v, x, y, z, ux, uy, uz, t, time)
     facing = dot(hit[3], hit[4], hit[5], ux, uy, uz)
     plain = abs(facing) > NEAR_EDGE and t > hit[12]
     if world.faces[primitive, 1] >= 0:
         plain = plain and min(min(u, v), 1.0 - u - v) > NEAR_EDGE
-    return t, instance, primitive, np.int64(world.instances[instance, OBJECT]), facing, plain
-
-
-@kernel
-def solids_at(world, x, y, z, time, ux, uy, uz):
-    """The solids that hold a point and the sheets above it; the sheets met at all; and whether that is sure.
-
-    A solid that the ray leaves more often than it enters holds the point. Of a sheet the first crossing decides.
-    """
-    low, high, ok = np.uint64(0), np.uint64(0), True
-    ahead_low, ahead_high = np.uint64(0), np.uint64(0)
-    met_low, met_high = np.uint64(0), np.uint64(0)
-    t, instance, primitive = 0.0, np.int64(-1), np.int64(-1)
-    for _ in range(MAX_WALK):
-        t, instance, primitive, item, facing, plain = next_crossing(
-            world, x, y, z, ux, uy, uz, time, t, instance, primitive
-        )
-        if instance < 0:
-            return low, high, met_low, met_high, ok
-        if world.kinds[item] == SHEET and not holds(met_low, met_high, item):
-            met_low, met_high, fits = set_with(met_low, met_high, item)
-            ok = ok and plain and fits
-            if facing > 0.0:
-                low, high, fits = set_with(low, high, item)
-                ok = ok and fits
-        elif world.kinds[item] == CLEAR:
-            ok = ok and plain
-            if facing < 0.0:
-                ahead_low, ahead_high, fits = set_with(ahead_low, ahead_high, item)
-            else:
-                ahead_low, ahead_high, fits = set_without(ahead_low, ahead_high, item)
-                if not fits:
-                    low, high, fits = set_with(low, high, item)
-            ok = ok and fits
-    return low, high, met_low, met_high, False
+    return hit[11], facing, plain
 
 
 @kernel
@@ -268,15 +302,35 @@ def objects_at(world, x, y, z, time, ux, uy, uz):
 
     Returns the set (low, high) as in object_set.py, and whether it is sure: not where the ray along the unit vector
     u grazes a surface or passes an edge, or where more than eight objects are there; ask again with another u then.
-    Below a sheet is where its first crossing along u, or where there is none along -u, leads out of its top.
+    A solid that the ray leaves more often than it enters holds the point. Below a sheet is where its first crossing
+    along u, or where there is none along -u, leads out of its top.
     """
-    low, high, met_low, met_high, ok = solids_at(world, x, y, z, time, ux, uy, uz)
-    if world.roots[2] == 0:
-        return low, high, ok
-    back_low, back_high, _, _, sure = solids_at(world, x, y, z, time, -ux, -uy, -uz)
-    for k in range(8):
-        item = set_item(back_low, back_high, k)
-        if item >= 0 and world.kinds[item] == SHEET and not holds(met_low, met_high, item):
-            low, high, fits = set_with(low, high, item)
-            ok = ok and fits
-    return low, high, ok and sure
+    low, high, ok = np.uint64(0), np.uint64(0), True
+    ahead_low, ahead_high = low, high
+    met_low, met_high = low, high
+    t, instance, primitive, back = 0.0, np.int64(-1), np.int64(-1), False
+    for _ in range(MAX_WALK):
+        t, instance, primitive, u, v, _ = closest_hit(
+            world, x, y, z, ux, uy, uz, time, math.inf, -1, -1, t, instance, primitive
+        )
+        if instance < 0:
+            if back or world.roots[2] == 0:
+                return low, high, ok
+            back, t, ux, uy, uz = True, 0.0, -ux, -uy, -uz
+            continue
+        item, facing, plain = crossing(world, instance, primitive, u, v, x, y, z, ux, uy, uz, t, time)
+        fits = True
+        if world.kinds[item] == SHEET and not holds(met_low, met_high, item):
+            met_low, met_high, fits = set_with(met_low, met_high, item)
+            if fits and facing > 0.0:
+                low, high, fits = set_with(low, high, item)
+            ok = ok and fits and plain
+        elif world.kinds[item] == CLEAR and not back:
+            if facing < 0.0:
+                ahead_low, ahead_high, fits = set_with(ahead_low, ahead_high, item)
+            else:
+                ahead_low, ahead_high, fits = set_without(ahead_low, ahead_high, item)
+                if not fits:
+                    low, high, fits = set_with(low, high, item)
+            ok = ok and fits and plain
+    return low, high, False

@@ -1,4 +1,10 @@
-"""Growing a binary search tree over boxes by the surface area heuristic, in bins (Wald 2007)."""
+"""Growing search trees by the surface area heuristic, in bins, and widening them to eight children a node.
+
+Wald, "On fast Construction of SAH-based Bounding Volume Hierarchies", 2007; Wald, Benthin & Boulos, "Getting Rid of
+Packets", 2008. A primitive is a record of eight float32: low x, y, z of its box, its number, minus high x, y, z, its
+instance; so one minimum of eight numbers unites two boxes. Node numbers depend on the counts alone, so the tree is the
+same for any number of threads.
+"""
 
 from __future__ import annotations
 
@@ -6,123 +12,301 @@ import math
 
 import numpy as np
 
+from renderer.arrays.world import NOTHING
 from renderer.base.jit import kernel
+from renderer.ray_search.lanes import empty_row, swap_rows, unite, unite_middle
+from renderer.ray_search.places import carry
 
 BINS = 16
-LEAF = 4  # items that a leaf holds at most
-DEEP = 48  # depth from which nodes are halved by count, so that a search's stack is never too small
+DEEP = 40  # depth from which nodes are halved by count, so that a search's stack is never too small
+MIDDLE, BOX, RIGHT = 3 * BINS, 3 * BINS + 1, 3 * BINS + 2  # rows of the room to work in, behind the bins
+ROOM_ROWS = 3 * BINS + 3
+WORK_ROWS = 128
+DOWN = 1.9e-7  # relative: three roundings to float32: that of the number, and two where a machine cannot fuse
+TINY = 1e-37
 
 
 @kernel
-def half_area(box):
-    """Half the surface of a box (6,); 0 for an empty one."""
-    x, y, z = box[3] - box[0], box[4] - box[1], box[5] - box[2]
-    if x < 0.0:
-        return 0.0
+def half_area(boxes, i):
+    """Half the surface of box i."""
+    x, y, z = -boxes[i, 4] - boxes[i, 0], -boxes[i, 5] - boxes[i, 1], -boxes[i, 6] - boxes[i, 2]
     return x * y + y * z + z * x
 
 
 @kernel
-def clear(box):
-    """Make a box (6,) empty."""
-    for k in range(3):
-        box[k], box[k + 3] = math.inf, -math.inf
+def bin_of(records, k, axis, low, scale):
+    """The bin in which the middle of a record falls."""
+    return min(np.int64((records[k, axis] - records[k, axis + 4] - low) * scale), BINS - 1)
 
 
 @kernel
-def grow(box, other):
-    """Make a box (6,) hold another."""
-    for k in range(3):
-        box[k] = min(box[k], other[k])
-        box[k + 3] = max(box[k + 3], other[k + 3])
+def bin_scale(room, axis):
+    """Lowest middle, and bins a unit, along an axis; 0 where all middles are the same."""
+    low = room[MIDDLE, axis]
+    extent = -room[MIDDLE, axis + 4] - low
+    # A hair less than BINS, so that the last middle falls into the last bin.
+    return low, np.float32(BINS * 0.9999) / extent if extent > np.float32(0.0) else np.float32(0.0)
 
 
 @kernel
-def bin_of(boxes, i, axis, low, scale):
-    """The bin in which an item's centre falls."""
-    return min(int((0.5 * (boxes[i, axis] + boxes[i, axis + 3]) - low) * scale), BINS - 1)
+def fill_bins(records, start, end, room, counts):
+    """Put records into bins along all three axes."""
+    for b in range(3 * BINS):
+        empty_row(room, b)
+        counts[b] = 0
+    (x0, xs), (y0, ys), (z0, zs) = bin_scale(room, 0), bin_scale(room, 1), bin_scale(room, 2)
+    for k in range(start, end):
+        x = bin_of(records, k, 0, x0, xs)
+        y = bin_of(records, k, 1, y0, ys) + BINS
+        z = bin_of(records, k, 2, z0, zs) + 2 * BINS
+        unite(room, x, records, k)
+        unite(room, y, records, k)
+        unite(room, z, records, k)
+        counts[x] += 1
+        counts[y] += 1
+        counts[z] += 1
 
 
 @kernel
-def best_split(boxes, order, start, end, centres, bins, counts, right):
-    """The cheapest cut: (axis or -1, bin that begins the right side)."""
-    best, best_axis, best_bin = math.inf, -1, 0
+def packs_of(n, shift):
+    """Leaves of 2^shift primitives that n of them fill."""
+    return (n + (1 << shift) - 1) >> shift
+
+
+@kernel
+def best_split(room, counts, costs, total, shift):
+    """The cheapest cut: (axis or -1, bin that begins the right side, its count on the left)."""
+    best, best_axis, best_bin, best_left = math.inf, np.int64(-1), np.int64(0), np.int64(0)
     for axis in range(3):
-        extent = centres[axis + 3] - centres[axis]
-        if not extent > 0.0:
-            continue
-        scale = BINS / extent
-        for b in range(BINS):
-            clear(bins[b])
-            counts[b] = 0
-        for k in range(start, end):
-            b = bin_of(boxes, order[k], axis, centres[axis], scale)
-            grow(bins[b], boxes[order[k]])
-            counts[b] += 1
-        clear(right)
-        n = 0
+        first = axis * BINS
+        empty_row(room, RIGHT)
+        n = np.int64(0)
         for b in range(BINS - 1, 0, -1):
-            grow(right, bins[b])
-            n += counts[b]
-            bins[b, 6] = half_area(right) * n
-        clear(right)
-        n = 0
-        for b in range(BINS - 1):
-            grow(right, bins[b])
-            n += counts[b]
-            cost = half_area(right) * n + bins[b + 1, 6]
-            if n > 0 and n < end - start and cost < best:
-                best, best_axis, best_bin = cost, axis, b + 1
-    return best_axis, best_bin
+            if counts[first + b] > 0:
+                unite(room, RIGHT, room, first + b)
+                n += counts[first + b]
+            costs[b] = half_area(room, RIGHT) * packs_of(n, shift) if n > 0 else 0.0
+        empty_row(room, RIGHT)
+        n = np.int64(0)
+        for b in range(1, BINS):
+            if counts[first + b - 1] > 0:
+                unite(room, RIGHT, room, first + b - 1)
+                n += counts[first + b - 1]
+            if n == 0 or n == total:
+                continue
+            cost = half_area(room, RIGHT) * packs_of(n, shift) + costs[b]
+            if cost < best:
+                best, best_axis, best_bin, best_left = cost, axis, b, n
+    return best_axis, best_bin, best_left
 
 
 @kernel
-def partition(boxes, order, start, end, centres, axis, first_right):
-    """Put the items of the left bins first; returns where the right ones begin."""
-    scale = BINS / (centres[axis + 3] - centres[axis])
+def partition(records, start, end, room, axis, first_right):
+    """Put the records of the left bins first."""
+    low, scale = bin_scale(room, axis)
     i, j = start, end - 1
     while i <= j:
-        if bin_of(boxes, order[i], axis, centres[axis], scale) < first_right:
+        if bin_of(records, i, axis, low, scale) < first_right:
             i += 1
-        else:
-            order[i], order[j] = order[j], order[i]
+        elif bin_of(records, j, axis, low, scale) >= first_right:
             j -= 1
-    return i
+        else:
+            swap_rows(records, i, j)
+            i += 1
+            j -= 1
 
 
 @kernel
-def grow_tree(boxes, order, base, node_boxes, links, first, work, bins, counts):
-    """Grow a tree over boxes (n, 6) from node `first` on; returns the number of nodes used in all.
+def measure(records, start, end, room):
+    """The box of records, and that of their middles, into the room."""
+    empty_row(room, MIDDLE)
+    empty_row(room, BOX)
+    for k in range(start, end):
+        unite(room, BOX, records, k)
+        unite_middle(room, MIDDLE, records, k)
 
-    `order` (n,) is left in the order of the leaves, whose item numbers begin at `base`. `work` (n nodes, 4), `bins`
-    (BINS + 2, 7) and `counts` (BINS,) are room to work in.
+
+@kernel
+def grow(records, boxes, links, room, counts, costs, work, tasks, first_task, smallest, shift):
+    """Grow the binary tree under one task (node, start, end, depth), a row of `tasks`.
+
+    Node i over n records has its children at i + 1 and i + 2 n_left. `links` (node, 2): start and end of a leaf's
+    records, or -1 and the right child. Subtrees of up to `smallest` records become tasks behind those there are;
+    leaves have up to 2^shift records. Returns the number of tasks then.
     """
-    used = first + 1
-    work[0, 0], work[0, 1], work[0, 2], work[0, 3] = first, 0, boxes.shape[0], 0
+    n_tasks = first_task + 1
+    for c in range(4):
+        work[0, c] = tasks[first_task, c]
     top = 1
     while top > 0:
         top -= 1
         node, start, end, depth = work[top, 0], work[top, 1], work[top, 2], work[top, 3]
-        clear(node_boxes[node])
-        centres = bins[BINS]
-        clear(centres)
-        for k in range(start, end):
-            grow(node_boxes[node], boxes[order[k]])
-            for axis in range(3):
-                c = 0.5 * (boxes[order[k], axis] + boxes[order[k], axis + 3])
-                centres[axis], centres[axis + 3] = min(centres[axis], c), max(centres[axis + 3], c)
-        if end - start <= LEAF:
-            links[node, 0], links[node, 1] = base + start, end - start
+        n = end - start
+        if n <= smallest and n_tasks < tasks.shape[0]:
+            tasks[n_tasks, 0], tasks[n_tasks, 1], tasks[n_tasks, 2], tasks[n_tasks, 3] = node, start, end, depth
+            n_tasks += 1
             continue
-        axis, first_right = np.int64(-1), np.int64(0)
+        measure(records, start, end, room)
+        empty_row(boxes, node)
+        unite(boxes, node, room, BOX)
+        if n <= 1 << shift:
+            links[node, 0], links[node, 1] = start, end
+            continue
+        axis, first_right, left = np.int64(-1), np.int64(0), np.int64(0)
         if depth < DEEP:
-            axis, first_right = best_split(boxes, order, start, end, centres, bins, counts, bins[BINS + 1])
-        middle = (start + end) >> 1
+            fill_bins(records, start, end, room, counts)
+            axis, first_right, left = best_split(room, counts, costs, n, shift)
         if axis >= 0:
-            middle = partition(boxes, order, start, end, centres, axis, first_right)
-        links[node, 0], links[node, 1] = used, 0
-        work[top, 0], work[top, 1], work[top, 2], work[top, 3] = used + 1, middle, end, depth + 1
-        work[top + 1, 0], work[top + 1, 1], work[top + 1, 2], work[top + 1, 3] = used, start, middle, depth + 1
-        top += 2
-        used += 2
-    return used
+            partition(records, start, end, room, axis, first_right)
+        else:
+            left = n >> 1
+        right = node + 2 * left
+        links[node, 0], links[node, 1] = -1, right
+        work[top, 0], work[top, 1], work[top, 2], work[top, 3] = right, start + left, end, depth + 1
+        top += 1
+        work[top, 0], work[top, 1], work[top, 2], work[top, 3] = node + 1, start, start + left, depth + 1
+        top += 1
+    return n_tasks
+
+
+@kernel
+def open_children(boxes, links, children):
+    """Replace the largest inner child by its two until there are eight or none is left; gives how many there are."""
+    n = 1
+    while n < 8:
+        largest, at = np.float32(-1.0), -1
+        for k in range(n):
+            if links[children[k], 0] < 0 and half_area(boxes, children[k]) > largest:
+                largest, at = half_area(boxes, children[k]), k
+        if at < 0:
+            break
+        opened = children[at]
+        children[at] = opened + 1
+        children[n] = links[opened, 1]
+        n += 1
+    return n
+
+
+@kernel
+def write_child(nodes, links32, node, k, boxes, child, number):
+    """Write one child into its place of a wide node."""
+    for axis in range(3):
+        nodes[node, 16 * axis + k] = boxes[child, axis]
+        nodes[node, 16 * axis + 8 + k] = -boxes[child, axis + 4]
+    links32[node, 48 + k] = number
+
+
+@kernel
+def blank_node(nodes, links32, node):
+    """A wide node with no children: its boxes are never met."""
+    for axis in range(3):
+        for k in range(8):
+            nodes[node, 16 * axis + k] = math.inf
+            nodes[node, 16 * axis + 8 + k] = -math.inf
+    for k in range(8):
+        links32[node, 48 + k] = NOTHING
+        nodes[node, 56 + k] = 0.0
+
+
+@kernel
+def widen(boxes, links, nodes, links32, first_node, leaves, first_leaf, code, children, work):
+    """Write the tree of nodes with eight children from node `first_node` on, and its leaves (start, end) from
+    `first_leaf` on; their numbers as children have `code` added. Returns nodes and leaves used in all, and the root.
+    """
+    if links[0, 0] >= 0:
+        leaves[0, 0], leaves[0, 1] = links[0, 0], links[0, 1]
+        return np.int64(0), np.int64(1), -1 - (first_leaf + code)
+    n_nodes, n_leaves = np.int64(1), np.int64(0)
+    work[0, 0], work[0, 1] = 0, 0
+    top = 1
+    while top > 0:
+        top -= 1
+        children[0] = work[top, 0]
+        node = work[top, 1]
+        n = open_children(boxes, links, children)
+        blank_node(nodes, links32, node)
+        for k in range(n):
+            child = children[k]
+            if links[child, 0] >= 0:
+                leaves[n_leaves, 0], leaves[n_leaves, 1] = links[child, 0], links[child, 1]
+                number = -1 - (first_leaf + n_leaves + code)
+                n_leaves += 1
+            else:
+                number = first_node + n_nodes
+                work[top, 0], work[top, 1] = child, n_nodes
+                n_nodes += 1
+                top += 1
+            write_child(nodes, links32, node, k, boxes, child, number)
+    return n_nodes, n_leaves, first_node
+
+
+@kernel
+def lower(x):
+    """A number as float32, never larger."""
+    return np.float32(x - (abs(x) * DOWN + TINY))
+
+
+@kernel
+def matrix_row(matrices, m):
+    """A matrix to the world, as twelve numbers."""
+    return (
+        matrices[m, 0], matrices[m, 1], matrices[m, 2], matrices[m, 3], matrices[m, 4], matrices[m, 5],
+        matrices[m, 6], matrices[m, 7], matrices[m, 8], matrices[m, 9], matrices[m, 10], matrices[m, 11],
+    )  # fmt: skip
+
+
+@kernel
+def placed_sphere(spheres, matrices, m, k):
+    """Centre and radius of a sphere through a matrix that scales evenly."""
+    w = matrix_row(matrices, m)
+    x, y, z = carry(w, spheres[k, 0], spheres[k, 1], spheres[k, 2])
+    scale = math.sqrt(w[0] * w[0] + w[4] * w[4] + w[8] * w[8])
+    return x, y, z, spheres[k, 3] * scale
+
+
+@kernel
+def record_primitives(vertices, faces, spheres, matrices, m, first, instance, begin, end, records, records32, at):
+    """Records of the primitives first + begin to first + end of an asset, through matrix row m, from row `at` on."""
+    w = matrix_row(matrices, m)
+    for k in range(begin, end):
+        p, r = first + k, at + k
+        if faces[p, 1] < 0:
+            x, y, z, radius = placed_sphere(spheres, matrices, m, faces[p, 0])
+            x0, y0, z0, x1, y1, z1 = x - radius, y - radius, z - radius, x + radius, y + radius, z + radius
+        else:
+            a, b, c = faces[p, 0], faces[p, 1], faces[p, 2]
+            ax, ay, az = carry(w, vertices[a, 0], vertices[a, 1], vertices[a, 2])
+            bx, by, bz = carry(w, vertices[b, 0], vertices[b, 1], vertices[b, 2])
+            cx, cy, cz = carry(w, vertices[c, 0], vertices[c, 1], vertices[c, 2])
+            x0, y0, z0 = min(min(ax, bx), cx), min(min(ay, by), cy), min(min(az, bz), cz)
+            x1, y1, z1 = max(max(ax, bx), cx), max(max(ay, by), cy), max(max(az, bz), cz)
+        records[r, 0], records[r, 1], records[r, 2] = lower(x0), lower(y0), lower(z0)
+        records[r, 4], records[r, 5], records[r, 6] = lower(-x1), lower(-y1), lower(-z1)
+        records32[r, 3], records32[r, 7] = p, instance
+
+
+@kernel
+def fill_packs(vertices, faces, spheres, matrices, instances, records32, leaves, begin, end, packs, packs32, first):
+    """Write leaves `begin` to `end` into packs of triangles, or of spheres, from pack `first` on."""
+    n_reals = packs.shape[1] - 8
+    for leaf in range(begin, end):
+        start, n = leaves[leaf, 0], leaves[leaf, 1] - leaves[leaf, 0]
+        pack = first + leaf
+        for k in range(8):
+            if k >= n:
+                packs32[pack, 2 * n_reals + k], packs32[pack, 2 * n_reals + 8 + k] = -1, -1
+                for c in range(k, n_reals, 8):
+                    packs[pack, c] = 0.0
+                continue
+            p, instance = records32[start + k, 3], records32[start + k, 7]
+            packs32[pack, 2 * n_reals + k], packs32[pack, 2 * n_reals + 8 + k] = instance, p
+            m = instances[instance, 2] if instance >= 0 else 0
+            if faces[p, 1] < 0:
+                x, y, z, radius = placed_sphere(spheres, matrices, m, faces[p, 0])
+                packs[pack, k], packs[pack, k + 8], packs[pack, k + 16], packs[pack, k + 24] = x, y, z, radius
+                continue
+            w = matrix_row(matrices, m)
+            for c in range(3):
+                v = faces[p, c]
+                x, y, z = carry(w, vertices[v, 0], vertices[v, 1], vertices[v, 2])
+                packs[pack, 8 * c + k], packs[pack, 24 + 8 * c + k], packs[pack, 48 + 8 * c + k] = x, y, z
