@@ -19,8 +19,8 @@ from renderer.ray_search.search import closest_hit
 from renderer.transport.film import camera_ray
 from renderer.transport.interface import mirrored, refracted, safe_normal
 from renderer.transport.layout import SMOOTH_BELOW
-from renderer.transport.media import is_boundary, material_of, top_object, touching
-from renderer.transport.path import TOUCH, surroundings
+from renderer.transport.media import TOUCH, is_boundary, material_of, top_object, touching
+from renderer.transport.path import surroundings
 from renderer.transport.render import frame_of
 from renderer.transport.threads import over_rows
 from renderer.transport.wavelengths import table_at

@@ -17,6 +17,7 @@ from renderer.ray_search.object_set import set_item, set_with, set_without
 from renderer.ray_search.search import closest_hit
 from renderer.transport.wavelengths import table_at
 
+TOUCH = 16.0  # error bounds within which boundaries are crossed as one
 MAX_TOUCHING = 8  # boundaries that may fall together
 
 

@@ -49,7 +49,7 @@ from renderer.transport.layout import (
     TIME,
     UNMATCHED,
 )
-from renderer.transport.media import absorb, crossed, is_boundary, material_of, top_object, touching
+from renderer.transport.media import TOUCH, absorb, crossed, is_boundary, material_of, top_object, touching
 from renderer.transport.opaque import meet_mirror, opaque_way
 from renderer.transport.panes import meet_pane
 from renderer.transport.points import pair
@@ -64,7 +64,6 @@ from renderer.transport.wavelengths import table_at
 ROULETTE_BELOW = 0.1  # share of what a branch began with, under which it goes on by chance only
 LEAST_CHANCE = 0.05
 POWER_SCALE = 4294967296.0  # 2^32: the unit in which the power of cut paths is counted
-TOUCH = 16.0  # error bounds within which boundaries are crossed as one
 MATCHED = 1e-3  # difference of index under which a rough boundary is as good as smooth
 N_LOOKS = 8  # directions in which the point query is tried
 

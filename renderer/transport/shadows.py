@@ -13,11 +13,12 @@ from renderer.base.vectors import dot
 from renderer.optics.fresnel_kernels import pane_mueller, refract_cosine
 from renderer.ray_search.hits import hit_frame
 from renderer.ray_search.search import any_hit, closest_hit
-from renderer.transport.layout import LANE_NM, SMOOTH_BELOW
-from renderer.transport.media import absorb, crossed, is_boundary, material_of, top_object
+from renderer.transport.layout import LANE_NM
+from renderer.transport.media import TOUCH, absorb, crossed, is_boundary, material_of, top_object, touching
 from renderer.transport.wavelengths import table_at
 
 MAX_SHADOW_SURFACES = 64
+SHORT = 1e-6  # share of a light's distance by which a shadow ray stops short of it
 BLOCKED = (0.0, 0.0, 0.0, 0.0)
 
 
@@ -59,13 +60,11 @@ def through_pane(frame, item, outer, cos_i, lanes, clear):
 
 
 @kernel
-def passes(objects, item, low, high, entering):
-    """Whether a boundary changes nothing for a ray (one of higher priority is there), and the set after it."""
-    low2, high2, _ = crossed(objects, low, high, item, entering)
-    same = material_of(objects, top_object(objects, low, high)) == material_of(
+def same_material(objects, low, high, low2, high2):
+    """Whether two sets of objects have the same material on top, so that nothing changes for a ray."""
+    return material_of(objects, top_object(objects, low, high)) == material_of(
         objects, top_object(objects, low2, high2)
     )
-    return same and objects.roughness[item] < SMOOTH_BELOW, low2, high2
 
 
 @kernel
@@ -76,7 +75,7 @@ def step_through(frame, lanes, ox, oy, oz, dx, dy, dz, time, reach, skip_i, skip
     t, instance, primitive = 0.0, -1, -1
     done = 0.0
     for _ in range(MAX_SHADOW_SURFACES):
-        t, instance, primitive, u, v, _crowded = closest_hit(
+        t, instance, primitive, u, v, crowded = closest_hit(
             world, ox, oy, oz, dx, dy, dz, time, reach, skip_i, skip_p, t, instance, primitive
         )
         outer = material_of(objects, top_object(objects, low, high))
@@ -90,9 +89,19 @@ def step_through(frame, lanes, ox, oy, oz, dx, dy, dz, time, reach, skip_i, skip
         if objects.kind[item] == PANE:
             clear = through_pane(frame, item, outer, min(abs(facing), 1.0), lanes, clear)
         elif is_boundary(objects.kind[item]):
-            same, low, high = passes(objects, item, low, high, facing < 0.0)
-            if not same:
+            entering = facing < 0.0
+            low2, high2, _ok = crossed(objects, low, high, item, entering)
+            if crowded and not same_material(objects, low, high, low2, high2):
+                # As on a camera path, boundaries that fall together are one: blocks of water that touch let light by.
+                low2, high2, _ok, t, instance, primitive, other, _p, _t, _u, _v = touching(
+                    world, objects, ox, oy, oz, dx, dy, dz, time, t, instance, primitive, low, high, item, entering,
+                    TOUCH * hit[12] / max(abs(facing), 1e-3),
+                )  # fmt: skip
+                if other >= 0:
+                    return BLOCKED
+            if not same_material(objects, low, high, low2, high2):
                 return BLOCKED
+            low, high = low2, high2
         else:
             return BLOCKED
     return BLOCKED
@@ -116,7 +125,8 @@ def seen(frame, lanes, ox, oy, oz, dx, dy, dz, time, reach, skip_i, skip_p, low,
 
 @kernel
 def finite_reach(reach):
-    """A light's distance less a hair, so that the ray does not meet the light itself."""
+    """A light's distance less a hair, so that the ray does not meet the light itself: far more than the rounding of
+    points a hundred kilometres from the origin."""
     if math.isinf(reach):
         return reach
-    return reach * (1.0 - 1e-9)
+    return reach * (1.0 - SHORT)
