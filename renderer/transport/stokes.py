@@ -76,10 +76,14 @@ def depolarise(reals, k, lane, factor):
 
 @kernel
 def share(reals, k, lane, a, b):
-    """What a block with first row (a, b) leaves of a lane's power: its chance as a branch, in [0, 1]."""
+    """What a block with first row (a, b) leaves of a lane's power: its chance as a branch, in [0, 1].
+
+    A lane that absorption has put out counts as unpolarised: a chance of nothing would make its ratio 0, as if no path
+    could have come this way, and 0/0 where all lanes are out.
+    """
     i = ROW + 4 * lane
     if reals[k, i] <= 0.0:
-        return 0.0
+        return min(max(a, 0.0), 1.0)
     return min(max(a + b * reals[k, i + 1] / reals[k, i], 0.0), 1.0)
 
 
