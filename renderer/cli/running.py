@@ -7,7 +7,7 @@ import traceback
 
 import click
 
-from renderer.base.errors import Fault, InputError, Interrupted
+from renderer.base.errors import Fault, InputError, Interrupted, nearest_name
 from renderer.cli import exit_codes
 from renderer.cli.commands import antisolar
 from renderer.cli.stopping import listen_for_stops
@@ -47,7 +47,7 @@ def _usage_fault(error: click.UsageError) -> Fault:
     nearest = getattr(error, "possibilities", None) or []
     expected = f'see "{path} --help"'
     if isinstance(error, click.NoSuchOption):
-        return Fault(f'no option named "{error.option_name}"', path, expected, ", ".join(sorted(nearest)[:3]))
+        return Fault(f'no option named "{error.option_name}"', path, expected, nearest_name(error.option_name, nearest))
     if isinstance(error, click.MissingParameter) and error.param is not None:
         return Fault(f"{error.param.human_readable_name} is missing", path, expected)
     if isinstance(error, click.BadParameter) and error.param is not None:

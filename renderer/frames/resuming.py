@@ -21,10 +21,14 @@ Warn = Callable[[str], None]
 
 @dataclass
 class Kept:
-    """Portions that a run may use. `paths` are those that were added, and torn ones: the next save replaces them."""
+    """Portions that a run may use. `paths` are those that were added, and torn ones: the next save replaces them.
+
+    `spare` hold rounds of `found` again, as when a run was killed between writing a portion and removing those in it.
+    """
 
     found: list[Found] = field(default_factory=list)
     paths: list[Path] = field(default_factory=list)
+    spare: list[Found] = field(default_factory=list)
 
 
 def facts_of_picture(path: Path) -> dict[str, Any] | None:
@@ -75,7 +79,8 @@ def kept_portions(
     """Portions of this identity within the wanted rounds, no round twice; with `others`, of other machines too."""
     found, torn = found_portions(out, shot, warn)
     fitting = [one for one in found if fits(one.facts.identity, identity, others)]
-    return Kept(chosen(fitting, wanted), torn)
+    used = chosen(fitting, wanted)
+    return Kept(used, torn, [one for one in fitting if one not in used and within(one.facts.rounds, wanted)])
 
 
 def fits(found: Identity, identity: Identity, others: bool) -> bool:
@@ -109,6 +114,7 @@ def take_kept(work: Work, kept: Kept, window: tuple[int, ...], kinds: Sequence[s
         if portion is not None:
             work.take(portion.facts.rounds, portion.sums, portion.facts.tally)
         kept.paths.append(one.path)
+    kept.paths += [one.path for one in kept.spare if within(one.facts.rounds, work.rounds)]
 
 
 def _on_one_grid(portion: Portion, work: Work, window: tuple[int, ...], kinds: Sequence[str]) -> bool:

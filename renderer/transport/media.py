@@ -25,6 +25,8 @@ MAX_TOUCHING = 8  # boundaries that may fall together
 def top_object(objects, low, high):
     """The object of highest priority in a set, the later one at equal priority; -1 for air."""
     best = -1
+    if low == 0 and high == 0:
+        return best
     for k in range(8):
         item = set_item(low, high, k)
         if item >= 0 and (

@@ -55,7 +55,7 @@ from renderer.transport.panes import meet_pane
 from renderer.transport.points import pair
 from renderer.transport.rough_boundary import boundary_way
 from renderer.transport.scattering import scatter
-from renderer.transport.state import draw, same_ray
+from renderer.transport.state import draw, lane_count, same_ray
 from renderer.transport.stokes import importance, scale_row
 from renderer.transport.surfaces import is_mirror
 from renderer.transport.vertices import place_vertex
@@ -154,7 +154,7 @@ def through_medium(frame, work, k, length_m):
     """Let the material that the ray runs in absorb over a length; gives its row."""
     material = material_of(frame.objects, top_object(frame.objects, work.sets[k, 0], work.sets[k, 1]))
     if material != 0:
-        for lane in range(4):
+        for lane in range(lane_count(work, k)):
             scale_row(work.reals, k, lane, absorb(frame.materials, material, work.lanes[lane, LANE_NM], length_m))
     return material
 
