@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import hashlib
 import json
+import platform
 from dataclasses import asdict, dataclass
 
 from renderer import __version__
@@ -51,11 +52,17 @@ def identity_of(shot: FrameShot, seed: int | None = None) -> Identity:
 
 
 def versions_here() -> tuple[tuple[str, str], ...]:
-    """The versions that can change a bit."""
+    """The versions that can change a bit; the C library's, since its sines and exponentials are what paths use."""
     from importlib.metadata import version
 
     libraries = tuple((name, version(name)) for name in ("llvmlite", "numba", "numpy"))
-    return (("antisolar", __version__), ("kernels", cache.kernel_fingerprint()), *libraries)
+    return (("antisolar", __version__), ("kernels", cache.kernel_fingerprint()), *libraries, ("libm", math_library()))
+
+
+def math_library() -> str:
+    """Name and version of the C library that elementary functions come from; the system's where that does not tell."""
+    name, number = platform.libc_ver()
+    return f"{name} {number}" if name else f"{platform.system()} {platform.release()}"
 
 
 def frame_seed(seed: int, frame: int) -> int:
