@@ -28,7 +28,9 @@ TREES = types.Tuple((NODES, PACKS, PACKS, WORDS, WORDS, PACKS, WORDS, PACKS))
 NODE_WIDTH, PACK_WIDTH, BALL_WIDTH = 64, 80, 40  # numbers in a row of World.nodes, packs and balls
 THREE_WHOLE = types.UniTuple(types.int64, 3)
 THREE_REAL = types.UniTuple(types.float64, 3)
-TWELVE_SINGLE = types.UniTuple(types.float32, 12)
+OUTWARD = 1.3e-7  # relative: more than twice what rounding to float32 loses
+LATER = 1.0 + 4.0 * 2.0**-23  # more than the roundings to float32 lose on both sides of a box
+RAY_D, RAY_O, RAY_INVERSE, RAY_SINGLES = 0, 5, 10, 16  # where in its room a ray's numbers begin
 
 
 class Lanes:
@@ -245,24 +247,74 @@ def first_bit(typing_context: Any, mask: Any) -> Any:
 
 
 @intrinsic
+def prepare(typing_context: Any, origin: Any, direction: Any, room: Any) -> Any:
+    """Put a ray's numbers into its room: direction, origin and one over the direction as x, y, z, x, y; and, for the
+    test of boxes, four times x, y, z as float32: minus the origin over the direction for the near and for the far
+    planes, and one over the direction for both. A bit is set for each axis along which the direction is negative.
+
+    Boxes only grow by rounding: near planes are met from an origin moved up the ray, far ones from one moved down,
+    and a little later. One over zero is a large number, so that a ray in a box's plane makes no not-a-number.
+    """
+
+    def generate(context: Any, builder: Any, signature: Any, args: Any) -> Any:
+        def four(values: Any) -> Any:
+            vector = ir.Constant(ir.VectorType(F64, 4), [0.0] * 4)
+            for k, value in enumerate([*values, values[0]]):
+                vector = builder.insert_element(vector, value, I32(k))
+            return Lanes(builder, vector)
+
+        def same(value: float) -> Lanes:
+            return Lanes(builder, ir.Constant(ir.VectorType(F64, 4), [value] * 4))
+
+        def single(value: Lanes) -> Any:
+            return builder.fptrunc(value.value, ir.VectorType(F32, 4))
+
+        def write(value: Any, at: int) -> None:
+            place = builder.bitcast(builder.gep(args[2], [I64(at)]), value.type.as_pointer())
+            builder.store(value, place, align=4)
+
+        o, d = (cgutils.unpack_tuple(builder, arg, 3) for arg in args[:2])
+        origin, direction = four(o), four(d)
+        negative = direction.is_("<", same(0.0))
+        tiny = (direction * direction).is_("<", same(1e-56))
+        inverse = tiny.where(negative.where(same(-1e28), same(1e28)), same(1.0) / direction)
+        for values, more, at in ((direction, d[1], RAY_D), (origin, o[1], RAY_O)):
+            write(values.value, at)
+            write(more, at + 4)
+        write(inverse.value, RAY_INVERSE)
+        write(builder.extract_element(inverse.value, I32(1)), RAY_INVERSE + 4)
+        x = Lanes(builder, builder.fpext(single(inverse), ir.VectorType(F64, 4)))
+        a = same(0.0) - origin * x
+        size = a.is_("<", same(0.0)).where(same(0.0) - a, a) * same(OUTWARD)
+        later = same(LATER)
+        for k, numbers in enumerate((a - size, (a + size) * later, x, x * later)):
+            write(single(numbers), RAY_SINGLES + 2 * k)
+        return builder.zext(builder.bitcast(negative.value, ir.IntType(4)), I64)
+
+    return types.int64(THREE_REAL, THREE_REAL, REAL), generate
+
+
+@intrinsic
 def children_hit(typing_context: Any, nodes: Any, node: Any, near: Any, ray: Any, reach: Any, room: Any) -> Any:
     """Which of a node's eight boxes a ray meets up to `reach`, a bit each; where it enters them is left in the room.
 
-    `near`: where in a node the planes begin that the ray meets first, an axis each. `ray`: minus the origin over the
-    direction for the near and the far planes (3 each), rounded so that boxes only grow, and one over the
-    direction for both (3 each).
+    `near`: where in a node the planes begin that the ray meets first, an axis each. `ray`: the ray's room.
     """
 
     def generate(context: Any, builder: Any, signature: Any, args: Any) -> Any:
         planes = row_behind(builder, args[0], args[1], NODE_WIDTH)
         offsets = cgutils.unpack_tuple(builder, args[2], 3)
-        numbers = [splat(builder, value) for value in cgutils.unpack_tuple(builder, args[3], 12)]
+        singles = builder.bitcast(builder.gep(args[3], [I64(RAY_SINGLES)]), F32.as_pointer())
+        numbers = [
+            [splat(builder, builder.load(builder.gep(singles, [I64(4 * k + axis)]))) for axis in range(3)]
+            for k in range(4)
+        ]
         first, last = [], []
         for axis in range(3):
             at = offsets[axis]
-            first.append(loaded(builder, planes, at, F32).times_plus(numbers[6 + axis], numbers[axis]))
+            first.append(loaded(builder, planes, at, F32).times_plus(numbers[2][axis], numbers[0][axis]))
             far = loaded(builder, planes, builder.xor(at, I64(8)), F32)
-            last.append(far.times_plus(numbers[9 + axis], numbers[3 + axis]))
+            last.append(far.times_plus(numbers[3][axis], numbers[1][axis]))
         enter = first[0].most(first[1]).most(first[2].most(constant(builder, F32, 0.0)))
         leave = last[0].least(last[1]).least(last[2].least(splat(builder, args[4])))
         enter.store(builder.bitcast(args[5], F32.as_pointer()))
@@ -270,7 +322,7 @@ def children_hit(typing_context: Any, nodes: Any, node: Any, near: Any, ray: Any
         loaded(builder, planes, 48, F32).store(builder.bitcast(args[5], F32.as_pointer()), 1)
         return enter.is_("<=", leave).bits()
 
-    return types.int64(NODES, types.int64, THREE_WHOLE, TWELVE_SINGLE, types.float32, REAL), generate
+    return types.int64(NODES, types.int64, THREE_WHOLE, REAL, types.float32, REAL), generate
 
 
 @intrinsic

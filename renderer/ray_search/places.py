@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import numpy as np
+
 from renderer.arrays.world import MATRIX, STEPS
 from renderer.base.jit import kernel
 from renderer.ray_search.lanes import pointers, real_at, word_at
@@ -97,16 +99,6 @@ def matrix_at(trees, instance, time):
 def steepest(dx, dy, dz):
     """The axis along which a direction is longest."""
     ax, ay, az = abs(dx), abs(dy), abs(dz)
-    if ax > ay and ax > az:
-        return 0
-    return 1 if ay > az else 2
-
-
-@kernel
-def permuted(axis, x, y, z):
-    """The three numbers turned round so that `axis` is the last."""
-    if axis == 0:
-        return y, z, x
-    if axis == 1:
-        return z, x, y
-    return x, y, z
+    axis, longest = np.int64(0), ax
+    axis, longest = (np.int64(1), ay) if ay > longest else (axis, longest)
+    return np.int64(2) if az > longest else axis

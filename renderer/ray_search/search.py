@@ -13,7 +13,11 @@ from renderer.base.vectors import dot
 from renderer.ray_search.hits import hit_frame
 from renderer.ray_search.lanes import (
     BALL_WIDTH,
+    OUTWARD,
     PACK_WIDTH,
+    RAY_D,
+    RAY_INVERSE,
+    RAY_O,
     children_hit,
     entry,
     first_bit,
@@ -23,6 +27,7 @@ from renderer.ray_search.lanes import (
     new_stack,
     number,
     prefetch,
+    prepare,
     put,
     single_bits,
     spheres_hit,
@@ -30,11 +35,9 @@ from renderer.ray_search.lanes import (
     word_at,
 )
 from renderer.ray_search.object_set import set_item, set_with, set_without
-from renderer.ray_search.places import carry, matrix_at, permuted, steepest, trees_of, turn
+from renderer.ray_search.places import carry, matrix_at, steepest, trees_of, turn
 
 ROUNDING = 1.5e-11  # share of a ray's numbers that joins touch_m: see `hits.error_of` for where both come from
-OUTWARD = 1.3e-7  # relative: more than twice what rounding to float32 loses
-LATER = 1.0 + 4.0 * 2.0**-23
 MAX_WALK = 4096  # hits that a point query follows
 NEAR_EDGE = 1e-9  # barycentric, and cosine to the surface, under which a crossing may be counted wrongly
 
@@ -62,34 +65,9 @@ def offered(best, limits, t, instance, primitive, u, v):
 
 
 @kernel
-def inverted(d):
-    """One over a number, finite where it is zero, so that a ray in a box's plane makes no not-a-number."""
-    if abs(d) < 1e-28:
-        return 1e28 if d >= 0.0 else -1e28
-    return 1.0 / d
-
-
-@kernel
-def box_ray(ox, oy, oz, ix, iy, iz):
-    """A ray for the test of boxes, rounded so that they only grow: see `lanes.children_hit`.
-
-    (ix, iy, iz): one over the direction. Low planes are met from an origin that is rounded up, high ones from one that
-    is rounded down, and the far ones a little later: by more than the roundings to float32 lose on both sides.
-    """
-    near = (
-        np.int64(0) if ix >= 0.0 else np.int64(8),
-        np.int64(16) if iy >= 0.0 else np.int64(24),
-        np.int64(32) if iz >= 0.0 else np.int64(40),
-    )
-    x, y, z = np.float64(np.float32(ix)), np.float64(np.float32(iy)), np.float64(np.float32(iz))
-    ax, ay, az = -ox * x, -oy * y, -oz * z
-    bx, by, bz = OUTWARD * abs(ax), OUTWARD * abs(ay), OUTWARD * abs(az)
-    return near, (
-        np.float32(ax - bx), np.float32(ay - by), np.float32(az - bz),
-        np.float32((ax + bx) * LATER), np.float32((ay + by) * LATER), np.float32((az + bz) * LATER),
-        np.float32(x), np.float32(y), np.float32(z),
-        np.float32(x * LATER), np.float32(y * LATER), np.float32(z * LATER),
-    )  # fmt: skip
+def near_planes(signs):
+    """Where in a node the planes begin that a ray meets first, an axis each, by the signs of its direction."""
+    return (signs & 1) << 3, 16 + ((signs & 2) << 2), 32 + ((signs & 4) << 1)
 
 
 @kernel
@@ -157,15 +135,14 @@ def meet_spheres(balls, pack, instance, origin, direction, limits, best, room):
 def walk(trees, root, instance, ox, oy, oz, dx, dy, dz, limits, best):
     """The best hit after all primitives of one tree, or after the first hit where any will do."""
     nodes, packs, balls = trees[0], trees[1], trees[2]
-    ix, iy, iz = inverted(dx), inverted(dy), inverted(dz)
-    near, ray = box_ray(ox, oy, oz, ix, iy, iz)
+    stack, entries, room, ray = new_stack(), new_room(), new_room(), new_room()
+    near = near_planes(prepare((ox, oy, oz), (dx, dy, dz), ray))
+    # The longest axis comes last; read from memory, since no one could foretell a branch.
     axis = steepest(dx, dy, dz)
-    px, py, _ = permuted(axis, dx, dy, dz)
-    _, _, scale = permuted(axis, ix, iy, iz)
-    shear = (px * scale, py * scale, scale)
-    origin = permuted(axis, ox, oy, oz)
-    axes = permuted(axis, np.int64(0), np.int64(24), np.int64(48))
-    stack, entries, room = new_stack(), new_room(), new_room()
+    scale = lane(ray, RAY_INVERSE + axis)
+    shear = (lane(ray, RAY_D + axis + 1) * scale, lane(ray, RAY_D + axis + 2) * scale, scale)
+    origin = (lane(ray, RAY_O + axis + 1), lane(ray, RAY_O + axis + 2), lane(ray, RAY_O + axis))
+    axes = (24 * (axis + 1 if axis < 2 else axis - 2), 24 * (axis + 2 if axis < 1 else axis - 1), 24 * axis)
     top, child = np.int64(0), root
     reach = rounded_up(best[0] + limits[6])
     while True:
@@ -201,8 +178,8 @@ def walk(trees, root, instance, ox, oy, oz, dx, dy, dz, limits, best):
 @kernel
 def walk_instances(trees, ox, oy, oz, dx, dy, dz, time, limits, best):
     """The best hit after all instances that have a tree of their own."""
-    near, ray = box_ray(ox, oy, oz, inverted(dx), inverted(dy), inverted(dz))
-    stack, entries = new_stack(), new_room()
+    stack, entries, ray = new_stack(), new_room(), new_room()
+    near = near_planes(prepare((ox, oy, oz), (dx, dy, dz), ray))
     put(stack, 0, word_at(trees[6], 1) & np.int64(0xFFFFFFFF))
     top = np.int64(1)
     while top > 0 and not (limits[7] and best[1] >= 0):

@@ -9,6 +9,7 @@ import numpy.typing as npt
 
 from renderer.arrays.world import World
 from renderer.base.jit import kernel, prange
+from renderer.base.reference import refer
 from renderer.ray_search.search import any_hit, closest_hit
 
 SHIFT = 10  # rays of a block, as a power of two
@@ -18,9 +19,10 @@ BLOCK = 1 << SHIFT
 @kernel
 def trace_block(world, origins, directions, time, t_max, first, last, t, ids, uv):
     """The closest hits of the rays from `first` up to `last`."""
+    place = refer(world)
     for k in range(first, last):
         d, i, p, u, v, crowded = closest_hit(
-            world, origins[k, 0], origins[k, 1], origins[k, 2], directions[k, 0], directions[k, 1], directions[k, 2],
+            place, origins[k, 0], origins[k, 1], origins[k, 2], directions[k, 0], directions[k, 1], directions[k, 2],
             time, t_max, -1, -1, 0.0, -1, -1,
         )  # fmt: skip
         t[k], ids[k, 0], ids[k, 1], ids[k, 2] = d, i, p, 1 if crowded else 0
@@ -40,9 +42,10 @@ def trace_closest(world, origins, directions, time, t_max, t, ids, uv):
 @kernel
 def any_block(world, origins, directions, time, t_max, first, last, ids):
     """Some hit of each of the rays from `first` up to `last`."""
+    place = refer(world)
     for k in range(first, last):
         ids[k, 0], ids[k, 1] = any_hit(
-            world, origins[k, 0], origins[k, 1], origins[k, 2], directions[k, 0], directions[k, 1], directions[k, 2],
+            place, origins[k, 0], origins[k, 1], origins[k, 2], directions[k, 0], directions[k, 1], directions[k, 2],
             time, t_max, -1, -1,
         )  # fmt: skip
 

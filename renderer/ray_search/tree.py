@@ -18,6 +18,7 @@ from renderer.ray_search.lanes import empty_row, swap_rows, unite, unite_middle
 from renderer.ray_search.places import carry
 
 BINS = 16
+FEW, FEW_BINS = 48, 8  # nodes of few records take fewer bins: there are many of them, and clearing bins costs most
 DEEP = 40  # depth from which nodes are halved by count, so that a search's stack is never too small
 MIDDLE, BOX, RIGHT = 3 * BINS, 3 * BINS + 1, 3 * BINS + 2  # rows of the room to work in, behind the bins
 ROOM_ROWS = 3 * BINS + 3
@@ -36,25 +37,26 @@ def half_area(boxes, i):
 @kernel
 def bin_of(records, k, axis, low, scale):
     """The bin in which the middle of a record falls."""
-    return min(np.int64((records[k, axis] - records[k, axis + 4] - low) * scale), BINS - 1)
+    return np.int64((records[k, axis] - records[k, axis + 4] - low) * scale)
 
 
 @kernel
-def bin_scale(room, axis):
+def bin_scale(room, axis, n_bins):
     """Lowest middle, and bins a unit, along an axis; 0 where all middles are the same."""
     low = room[MIDDLE, axis]
     extent = -room[MIDDLE, axis + 4] - low
-    # A hair less than BINS, so that the last middle falls into the last bin.
-    return low, np.float32(BINS * 0.9999) / extent if extent > np.float32(0.0) else np.float32(0.0)
+    # A hair less than all bins, so that the last middle falls into the last.
+    return low, np.float32(n_bins * 0.9999) / extent if extent > np.float32(0.0) else np.float32(0.0)
 
 
 @kernel
-def fill_bins(records, start, end, room, counts):
+def fill_bins(records, start, end, room, counts, n_bins):
     """Put records into bins along all three axes."""
-    for b in range(3 * BINS):
-        empty_row(room, b)
-        counts[b] = 0
-    (x0, xs), (y0, ys), (z0, zs) = bin_scale(room, 0), bin_scale(room, 1), bin_scale(room, 2)
+    for axis in range(3):
+        for b in range(axis * BINS, axis * BINS + n_bins):
+            empty_row(room, b)
+            counts[b] = 0
+    (x0, xs), (y0, ys), (z0, zs) = bin_scale(room, 0, n_bins), bin_scale(room, 1, n_bins), bin_scale(room, 2, n_bins)
     for k in range(start, end):
         x = bin_of(records, k, 0, x0, xs)
         y = bin_of(records, k, 1, y0, ys) + BINS
@@ -74,21 +76,21 @@ def packs_of(n, shift):
 
 
 @kernel
-def best_split(room, counts, costs, total, shift):
+def best_split(room, counts, costs, total, shift, n_bins):
     """The cheapest cut: (axis or -1, bin that begins the right side, its count on the left)."""
     best, best_axis, best_bin, best_left = math.inf, np.int64(-1), np.int64(0), np.int64(0)
     for axis in range(3):
         first = axis * BINS
         empty_row(room, RIGHT)
         n = np.int64(0)
-        for b in range(BINS - 1, 0, -1):
+        for b in range(n_bins - 1, 0, -1):
             if counts[first + b] > 0:
                 unite(room, RIGHT, room, first + b)
                 n += counts[first + b]
             costs[b] = half_area(room, RIGHT) * packs_of(n, shift) if n > 0 else 0.0
         empty_row(room, RIGHT)
         n = np.int64(0)
-        for b in range(1, BINS):
+        for b in range(1, n_bins):
             if counts[first + b - 1] > 0:
                 unite(room, RIGHT, room, first + b - 1)
                 n += counts[first + b - 1]
@@ -101,9 +103,9 @@ def best_split(room, counts, costs, total, shift):
 
 
 @kernel
-def partition(records, start, end, room, axis, first_right):
+def partition(records, start, end, room, axis, first_right, n_bins):
     """Put the records of the left bins first."""
-    low, scale = bin_scale(room, axis)
+    low, scale = bin_scale(room, axis, n_bins)
     i, j = start, end - 1
     while i <= j:
         if bin_of(records, i, axis, low, scale) < first_right:
@@ -153,11 +155,12 @@ def grow(records, boxes, links, room, counts, costs, work, tasks, first_task, sm
             links[node, 0], links[node, 1] = start, end
             continue
         axis, first_right, left = np.int64(-1), np.int64(0), np.int64(0)
+        n_bins = BINS if n > FEW else FEW_BINS
         if depth < DEEP:
-            fill_bins(records, start, end, room, counts)
-            axis, first_right, left = best_split(room, counts, costs, n, shift)
+            fill_bins(records, start, end, room, counts, n_bins)
+            axis, first_right, left = best_split(room, counts, costs, n, shift, n_bins)
         if axis >= 0:
-            partition(records, start, end, room, axis, first_right)
+            partition(records, start, end, room, axis, first_right, n_bins)
         else:
             left = n >> 1
         right = node + 2 * left
