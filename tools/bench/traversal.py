@@ -179,7 +179,7 @@ def main() -> None:
         compare(label + ", random, closest", world, other, scattered, repeats)
         compare(label + ", random, any", world, other, scattered, repeats, any_hit=True)
     if wanted("mixed"):
-        mesh = mixture(3 if quick else 6)
+        mesh = mixture(3 if quick else 5)
         world, other = world_of(asset_of(mesh)), baseline_of(mesh)
         scattered = random_rays(np.full(3, -5.0), np.full(3, 5.0), n)
         label = f"mixed {len(mesh.faces)}"
