@@ -50,7 +50,7 @@ FILTER = 1.0 / 6.0
 @pytest.mark.parametrize(("f_number", "focus", "distance"), [(0.1, 2.0, 4.0), (0.1, 3.0, 1.5), (0.2, 1.0, 1e4)])
 def test_the_circle_of_confusion_has_the_size_of_the_thin_lens_formula(f_number, focus, distance):
     # Pictures stand in focal lengths, so that a field point at `distance` spreads over A |1/distance - 1/focus| of them
-    # (A the opening's diameter): the thin lens of the textbooks, whose sensor stays in the plane that sharpens infinity.
+    # (A the opening's diameter): the thin lens of the textbooks, with its sensor where infinity is sharp.
     camera = STILL.replace("focal_length", f"f_number = {f_number}\nfocus_distance = {focus}\nfocal_length")
     radius = 0.03 * distance
     picture = rendered(camera + spot([0, 0, -distance], radius), 256)
