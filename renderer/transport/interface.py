@@ -33,6 +33,26 @@ def safe_normal(dx, dy, dz, gx, gy, gz, sx, sy, sz):
 
 
 @kernel
+def rough_normal(dx, dy, dz, gx, gy, gz, sx, sy, sz, alpha):
+    """The shading normal of what mirrors roughly, bent as little as needed that the mirrored ray stays above the
+    true surface g by twice the spread of its lobe, or by half its height over a flat surface where that is less.
+
+    Else part of the lobe would fall below the surface and be lost: coarse waves would turn dark. g and s may face
+    either way.
+    """
+    if dot(gx, gy, gz, dx, dy, dz) > 0.0:
+        gx, gy, gz = -gx, -gy, -gz
+    sx, sy, sz = safe_normal(dx, dy, dz, gx, gy, gz, sx, sy, sz)
+    twice = -2.0 * dot(dx, dy, dz, sx, sy, sz)
+    rx, ry, rz = dx + twice * sx, dy + twice * sy, dz + twice * sz
+    lift = min(2.0 * alpha, -0.5 * dot(dx, dy, dz, gx, gy, gz)) - dot(rx, ry, rz, gx, gy, gz)
+    if lift <= 0.0:
+        return sx, sy, sz
+    rx, ry, rz = unit(rx + lift * gx, ry + lift * gy, rz + lift * gz)
+    return unit(rx - dx, ry - dy, rz - dz)
+
+
+@kernel
 def mirrored(dx, dy, dz, nx, ny, nz):
     """The ray d mirrored at the normal n."""
     twice = -2.0 * dot(dx, dy, dz, nx, ny, nz)

@@ -12,6 +12,7 @@ from renderer.ray_search.search import any_hit, closest_hit, objects_at
 from renderer.transport.boundaries import meet_boundary
 from renderer.transport.endings import escape, meet_light
 from renderer.transport.film import camera_ray, polarisation_axis, tent
+from renderer.transport.interface import rough_normal
 from renderer.transport.layout import (
     AFTER,
     AXIS,
@@ -57,7 +58,7 @@ from renderer.transport.rough_boundary import boundary_way
 from renderer.transport.scattering import scatter
 from renderer.transport.state import draw, lane_count, same_ray
 from renderer.transport.stokes import importance, scale_row
-from renderer.transport.surfaces import is_mirror
+from renderer.transport.surfaces import is_mirror, mirror_spread
 from renderer.transport.vertices import place_vertex
 from renderer.transport.wavelengths import table_at
 
@@ -192,12 +193,14 @@ def cross(frame, work, k, hit, t, instance, primitive, crowded):
 
 
 @kernel
-def place(work, k, hit, error_m):
-    """Place the vertex at a hit, to be left by a ray that skips what was hit."""
+def place(work, k, hit, error_m, alpha):
+    """Place the vertex at a hit; alpha is the spread of what it mirrors, below 0 where its normal may be any."""
     px, py, pz, gx, gy, gz, sx, sy, sz, _tu, _tv, _item, _error_m = hit
     reals = work.reals
-    place_vertex(work.vertex, px, py, pz, gx, gy, gz, sx, sy, sz, error_m, reals[k, DIRECTION],
-                 reals[k, DIRECTION + 1], reals[k, DIRECTION + 2])  # fmt: skip
+    dx, dy, dz = reals[k, DIRECTION], reals[k, DIRECTION + 1], reals[k, DIRECTION + 2]
+    if alpha >= 0.0:
+        sx, sy, sz = rough_normal(dx, dy, dz, gx, gy, gz, sx, sy, sz, alpha)
+    place_vertex(work.vertex, px, py, pz, gx, gy, gz, sx, sy, sz, error_m, dx, dy, dz)
 
 
 @kernel
@@ -219,7 +222,7 @@ def meet_clear(frame, work, k, hit, m1, instance, primitive, t, beyond):
         return k, False, 0.0, 0.0, 0.0
     error_through = error_m + (last_t - t)
     if is_rough(frame.materials, m1, m2, objects.roughness[item], work.lanes):
-        place(work, k, hit, error_through)
+        place(work, k, hit, error_through, objects.roughness[item] ** 2)
         skip(work, k, instance, primitive)
         wx, wy, wz = boundary_way(frame, work, k, objects.roughness[item], m1, m2)
         return k, True, wx, wy, wz
@@ -241,9 +244,9 @@ def meet_other(frame, work, k, hit, m1, instance, primitive, t):
         facing = dot(gx, gy, gz, reals[k, DIRECTION], reals[k, DIRECTION + 1], reals[k, DIRECTION + 2])
         meet_light(frame, work, k, item, facing, instance, primitive, t)
         return k - 1, False, 0.0, 0.0, 0.0
-    place(work, k, hit, error_m)
-    skip(work, k, instance, primitive)
     surface = objects.surface[item]
+    place(work, k, hit, error_m, mirror_spread(frame.surfaces, surface))
+    skip(work, k, instance, primitive)
     if is_mirror(frame.surfaces, surface):
         meet_mirror(frame, work, k, surface, tu, tv)
         return k, False, 0.0, 0.0, 0.0

@@ -85,6 +85,16 @@ def is_mirror(surfaces, surface):
 
 
 @kernel
+def mirror_spread(surfaces, surface):
+    """Alpha of what a surface mirrors, dry or wet; -1 where it mirrors nothing."""
+    if surfaces.finish[surface] == METAL or surfaces.roughness[surface] < NO_GLOSS:
+        return surfaces.roughness[surface] ** 2
+    if surfaces.wetness[surface] > 0.0:
+        return surfaces.film_roughness[surface] ** 2
+    return -1.0
+
+
+@kernel
 def top_of(surfaces, surface, u_wet):
     """(index of the clear top, alpha, wet) at this hit: index 0 for none, -1 for metal.
 
