@@ -10,7 +10,7 @@ from typing import Any
 
 import pytest
 from command_line import SHOT, write_shot
-from plain_engine import PlainEngine
+from grey_engine import GreyEngine
 
 from renderer.cli.running import run
 
@@ -18,11 +18,11 @@ SMALL = SHOT.replace("pixels = [64, 36]", "pixels = [16, 9]")
 
 
 @pytest.fixture
-def plain(monkeypatch: pytest.MonkeyPatch, tmp_path: Path) -> PlainEngine:
+def plain(monkeypatch: pytest.MonkeyPatch, tmp_path: Path) -> GreyEngine:
     """A stand-in for transport, and a folder to work in."""
     from renderer.frames import merging, render
 
-    plain = PlainEngine()
+    plain = GreyEngine()
     for module in (render, merging):
         monkeypatch.setattr(module, "transport_engine", plain.engine)
     monkeypatch.chdir(tmp_path)
@@ -37,7 +37,7 @@ def rendered(capsys: pytest.CaptureFixture[str], *arguments: object, code: int =
     return said.out, said.err
 
 
-def test_pictures_are_listed_on_standard_output_alone(plain: PlainEngine, capsys: pytest.CaptureFixture[str]) -> None:
+def test_pictures_are_listed_on_standard_output_alone(plain: GreyEngine, capsys: pytest.CaptureFixture[str]) -> None:
     out, err = rendered(capsys, "--rounds", 3)
     assert out.splitlines() == [f"out/test.{frame}.exr" for frame in (1001, 1002, 1003)]
     for frame in (1001, 1002, 1003):
@@ -48,7 +48,7 @@ def test_pictures_are_listed_on_standard_output_alone(plain: PlainEngine, capsys
     assert "the sky is plain" in err
 
 
-def test_a_check_report_lies_beside_the_pictures(plain: PlainEngine, capsys: pytest.CaptureFixture[str]) -> None:
+def test_a_check_report_lies_beside_the_pictures(plain: GreyEngine, capsys: pytest.CaptureFixture[str]) -> None:
     _, err = rendered(capsys, "--rounds", 1, "--frames", 1001, "--variant", "wrong")
     page = Path("out/test.wrong.check.html").read_text(encoding="utf-8")
     assert page.count("data:image/png;base64,") == 2
@@ -56,7 +56,7 @@ def test_a_check_report_lies_beside_the_pictures(plain: PlainEngine, capsys: pyt
     assert "check: flagged: " in err
 
 
-def test_json_carries_the_results(plain: PlainEngine, capsys: pytest.CaptureFixture[str]) -> None:
+def test_json_carries_the_results(plain: GreyEngine, capsys: pytest.CaptureFixture[str]) -> None:
     out, _ = rendered(capsys, "--rounds", 8, "--frames", 1001, "--json", "-", "--quiet")
     (row,) = json.loads(out)["frames"]
     assert (row["frame"], row["path"], row["rounds"], row["rendered_rounds"]) == (1001, "out/test.1001.exr", 8, 8)
@@ -64,11 +64,11 @@ def test_json_carries_the_results(plain: PlainEngine, capsys: pytest.CaptureFixt
     assert row["standard_error"] > 0.0
 
 
-def test_quiet_is_quiet(plain: PlainEngine, capsys: pytest.CaptureFixture[str]) -> None:
+def test_quiet_is_quiet(plain: GreyEngine, capsys: pytest.CaptureFixture[str]) -> None:
     assert rendered(capsys, "--rounds", 1, "--frames", 1001, "--quiet")[1] == ""
 
 
-def test_what_is_there_is_not_rendered_again(plain: PlainEngine, capsys: pytest.CaptureFixture[str]) -> None:
+def test_what_is_there_is_not_rendered_again(plain: GreyEngine, capsys: pytest.CaptureFixture[str]) -> None:
     rendered(capsys, "--rounds", 2, "--frames", 1001)
     calls: list[int] = []
     plain.during = calls.append
@@ -79,7 +79,7 @@ def test_what_is_there_is_not_rendered_again(plain: PlainEngine, capsys: pytest.
     assert calls != []
 
 
-def test_dry_run_renders_nothing(plain: PlainEngine, capsys: pytest.CaptureFixture[str]) -> None:
+def test_dry_run_renders_nothing(plain: GreyEngine, capsys: pytest.CaptureFixture[str]) -> None:
     out, _ = rendered(capsys, "--dry-run", "--rounds", 5)
     assert out.splitlines()[0] == "frame 1001: 5 rounds of 16 x 9 to out/test.1001.exr"
     assert not Path("out").exists()
@@ -87,7 +87,7 @@ def test_dry_run_renders_nothing(plain: PlainEngine, capsys: pytest.CaptureFixtu
     assert [row["frame"] for row in planned] == [1001, 1002, 1003]
 
 
-def test_portions_merge_to_the_same_bytes(plain: PlainEngine, capsys: pytest.CaptureFixture[str]) -> None:
+def test_portions_merge_to_the_same_bytes(plain: GreyEngine, capsys: pytest.CaptureFixture[str]) -> None:
     rendered(capsys, "--rounds", 5, "--frames", 1001, "--out", "whole")
     for k in (2, 1):
         out, _ = rendered(capsys, "--rounds", 5, "--frames", 1001, "--out", "parts", "--portion", f"{k}/2")
@@ -98,7 +98,7 @@ def test_portions_merge_to_the_same_bytes(plain: PlainEngine, capsys: pytest.Cap
     assert Path("parts/test.1001.exr").read_bytes() == Path("whole/test.1001.exr").read_bytes()
 
 
-def test_a_frame_with_missing_rounds_is_incomplete(plain: PlainEngine, capsys: pytest.CaptureFixture[str]) -> None:
+def test_a_frame_with_missing_rounds_is_incomplete(plain: GreyEngine, capsys: pytest.CaptureFixture[str]) -> None:
     rendered(capsys, "--rounds", 4, "--frames", 1001, "--portion", "1/2")
     assert run(["merge", "test.shot.toml", "--frames", "1001", "--rounds", "4"]) == 3
     said = capsys.readouterr()
@@ -106,7 +106,7 @@ def test_a_frame_with_missing_rounds_is_incomplete(plain: PlainEngine, capsys: p
     assert "frame 1001 is incomplete" in said.err
 
 
-def test_merging_nothing_is_bad_input(plain: PlainEngine, capsys: pytest.CaptureFixture[str]) -> None:
+def test_merging_nothing_is_bad_input(plain: GreyEngine, capsys: pytest.CaptureFixture[str]) -> None:
     assert run(["merge", "test.shot.toml"]) == 2
     said = capsys.readouterr().err
     assert said.count("error: ") == 3  # one for each frame
@@ -115,7 +115,7 @@ def test_merging_nothing_is_bad_input(plain: PlainEngine, capsys: pytest.Capture
 
 @pytest.mark.parametrize("number", [signal.SIGINT, signal.SIGTERM])
 def test_a_signal_keeps_what_is_done_and_the_next_run_goes_on(
-    number: signal.Signals, plain: PlainEngine, capsys: pytest.CaptureFixture[str]
+    number: signal.Signals, plain: GreyEngine, capsys: pytest.CaptureFixture[str]
 ) -> None:
     plain.during = lambda done: os.kill(os.getpid(), number) if done == 3 else None
     out, err = rendered(capsys, "--rounds", 6, "--frames", 1001, code=3)
@@ -131,14 +131,14 @@ def test_a_signal_keeps_what_is_done_and_the_next_run_goes_on(
     assert Path("out/test.1001.exr").read_bytes() == Path("whole/test.1001.exr").read_bytes()
 
 
-def test_a_target_that_was_not_reached_is_incomplete(plain: PlainEngine, capsys: pytest.CaptureFixture[str]) -> None:
+def test_a_target_that_was_not_reached_is_incomplete(plain: GreyEngine, capsys: pytest.CaptureFixture[str]) -> None:
     arguments: tuple[Any, ...] = ("--frames", 1001, "--rounds", 8)
     rendered(capsys, *arguments, "--standard-error", 0.9)
     rendered(capsys, *arguments, "--standard-error", 0.000001, "--overwrite", code=3)
 
 
 def test_a_frame_with_a_fault_leaves_the_others(
-    plain: PlainEngine, capsys: pytest.CaptureFixture[str], tmp_path: Path
+    plain: GreyEngine, capsys: pytest.CaptureFixture[str], tmp_path: Path
 ) -> None:
     text = SMALL + '\n[[objects]]\nname = "splash"\nmesh = "splash.####.ply"\nmaterial = "water"\n'
     write_shot(tmp_path, text)
@@ -166,7 +166,7 @@ def test_a_frame_with_a_fault_leaves_the_others(
     ],
 )
 def test_bad_options_are_said_and_end_with_2(
-    arguments: list[str], where: str, plain: PlainEngine, capsys: pytest.CaptureFixture[str]
+    arguments: list[str], where: str, plain: GreyEngine, capsys: pytest.CaptureFixture[str]
 ) -> None:
     _, err = rendered(capsys, *arguments, code=2)
     assert f"  where:    {where}" in err

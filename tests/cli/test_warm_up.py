@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import os
-import time
 from pathlib import Path
 
 from command_line import SHOT, antisolar, write_shot
@@ -24,8 +23,7 @@ def test_the_shot_of_warm_up_has_one_of_everything() -> None:
     assert {item.surface.finish for item in frame.objects if item.surface} == {"matt", "metal"}
 
 
-def test_after_warm_up_a_render_compiles_nothing_and_takes_seconds(tmp_path: Path) -> None:
-    """The limit of 3 s for a warm 64x36 round is for two idle cores; here it is the best of three, and doubled."""
+def test_after_warm_up_a_render_compiles_nothing(tmp_path: Path) -> None:
     first = antisolar("warm-up")
     assert first.returncode == 0, first.stderr
     folder = Path(first.stdout.strip())
@@ -33,16 +31,11 @@ def test_after_warm_up_a_render_compiles_nothing_and_takes_seconds(tmp_path: Pat
     compiled = {path: path.stat().st_mtime_ns for path in folder.rglob("*.nbc")}
     assert compiled
     shot = write_shot(tmp_path, SHOT)
-    times = []
-    for k in range(3):
-        start = time.perf_counter()
-        run = antisolar("render", shot, "--frames", 1001, "--rounds", 1, "--out", tmp_path / f"out{k}")
-        times.append(time.perf_counter() - start)
-        assert run.returncode == 0, run.stderr
-        assert "compiling" not in run.stderr
-        assert (tmp_path / f"out{k}" / "test.1001.exr").stat().st_size > 0
+    run = antisolar("render", shot, "--frames", 1001, "--rounds", 1, "--out", tmp_path / "out")
+    assert run.returncode == 0, run.stderr
+    assert "compiling" not in run.stderr
+    assert (tmp_path / "out" / "test.1001.exr").stat().st_size > 0
     assert {path: path.stat().st_mtime_ns for path in folder.rglob("*.nbc")} == compiled
-    assert min(times) < 6.0
 
 
 def test_a_cache_that_cannot_be_written_is_no_obstacle(tmp_path: Path) -> None:

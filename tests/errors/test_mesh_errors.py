@@ -262,10 +262,10 @@ def one_sentence(error: InputError, path: Path, said: str) -> None:
 @pytest.mark.parametrize(("writer", "said"), [row[1:] for row in MESHES], ids=[row[0] for row in MESHES])
 def test_broken_meshes_are_one_sentence(tmp_path, writer, said):
     path = writer(tmp_path)
-    started = time.perf_counter()
+    started = time.process_time()
     with pytest.raises(InputError) as caught:
         load_mesh(path, smooth=True)
-    assert time.perf_counter() - started < 2.0
+    assert time.process_time() - started < 2.0
     one_sentence(caught.value, path, said)
 
 

@@ -176,10 +176,10 @@ EIGHT_BIT = [
 
 def told(path: Path, read: Callable[[Path], object], said: str) -> None:
     """What every message must be, and how long it may take."""
-    started = time.perf_counter()
+    started = time.process_time()
     with pytest.raises(InputError) as caught:
         read(path)
-    assert time.perf_counter() - started < 2.0
+    assert time.process_time() - started < 2.0
     (fault,) = caught.value.faults
     assert said in fault.what
     assert fault.where == str(path)

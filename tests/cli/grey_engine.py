@@ -28,7 +28,7 @@ class Scene:
     material_names: tuple[str, ...] = ("air",)
 
 
-class PlainEngine:
+class GreyEngine:
     """`during` is called for each band of rows, with the round's number."""
 
     def __init__(self) -> None:
