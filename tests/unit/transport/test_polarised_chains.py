@@ -151,3 +151,11 @@ def test_without_a_polariser_both_halves_are_seen():
     error = np.hypot(plain.mean_error, np.hypot(level.mean_error, upright.mean_error))
     assert level.mean + upright.mean == pytest.approx(plain.mean, abs=5.0 * error)
     assert abs(level.mean - upright.mean) > 5.0 * error
+
+
+def test_a_polariser_halves_light_that_a_matt_surface_has_scattered():
+    shot = "[camera]\nPposition = [0, 2, 3]\ntarget = [0, 0, 0]\nfocal_length = 400\npixels = [8, 8]\n"
+    shot += '[sky]\nkind = "uniform"\n[render]\nwavelengths = [550]\n[[objects]]\nname = "floor"\n'
+    shot += "shape = { box = [9, 0.1, 9] }\nsurface = { reflectance = 0.5 }\n"
+    plain, halved = rendered(shot.replace("P", "", 1), 64), rendered(shot.replace("P", "polariser = 35\n", 1), 64)
+    assert halved.luminance == pytest.approx(0.5 * plain.luminance, rel=1e-6)

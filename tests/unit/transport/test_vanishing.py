@@ -142,6 +142,27 @@ SEEN = {
     "a turning cube": VIEW + CUBE.replace("[25, 35, 10]", "{ 1001 = [25, 35, 10], 1002 = [85, 35, 70] }"),
 }
 
+FAR = VIEW.replace("[0, 0, 4]", "[1e6, 1e6, 1000004]").replace("target = [0, 0, 0]", "target = [1e6, 1e6, 1e6]")
+OPEN_SHUTTER = VIEW.replace("[0, 0, 4]", "[0, 0, 1]\nshutter = 360\nshutter_offset = 0")
+PLACES = ", ".join(f"{{ translation = [{x}, {y}, 0] }}" for x in (-0.3, 0.1, 0.6) for y in (-0.3, 0.1))
+SEEN |= {
+    "a mirrored cube": VIEW + CUBE.replace("rotation", "scale = [-1, 1, 1], rotation"),
+    "a stretched sphere": VIEW + SPHERE + "transform = { scale = [1.3, 0.6, 1] }\n",
+    "a glass of water of a tenth of a millimetre": VIEW.replace("[0, 0, 4]", "[0, 0, 4e-4]")
+    + GLASS_OF_WATER.replace("rotation", "scale = 1e-4, rotation"),
+    "a glass of water a thousand kilometres off": FAR
+    + GLASS_OF_WATER.replace("rotation", "translation = [1e6, 1e6, 1e6], rotation"),
+    "a film of a nanometre": VIEW + FILM.replace("0.05", "1e-9"),
+    "spheres placed into each other": VIEW + SPHERE.replace("0.8", "0.25") + f"placements = [{PLACES}]\n",
+    "a sphere that comes over the camera": OPEN_SHUTTER
+    + SPHERE
+    + "transform = { translation = { 1001 = [0, 0, 0], 1002 = [0, 0, 1] } }\n",
+    "a camera that goes into a sphere": OPEN_SHUTTER.replace(
+        "= [0, 0, 1]", "= { 1001 = [0, 0, 1], 1002 = [0, 0, 0.5] }"
+    )
+    + SPHERE,
+}
+
 
 @pytest.mark.parametrize("name", SEEN)
 def test_other_views_and_shapes_vanish_too(name):
