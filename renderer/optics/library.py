@@ -34,6 +34,11 @@ class LibraryEntry:
     salinity: float
 
     @property
+    def is_water(self) -> bool:
+        """Whether its index depends on temperature and salinity: fresh water, or sea water."""
+        return self.law == "water"
+
+    @property
     def extended(self) -> str:
         """What of 380 to 780 nm the fitted range leaves out, and what is done there."""
         low, high = self.range_nm

@@ -36,13 +36,13 @@ MODELS = ("constant", "sellmeier", "cauchy", "abbe", "table")
 
 
 def entry_salinity(entry: LibraryEntry, salinity: float | None) -> float:
-    """Per mille of salt: none in a material that has none in the library; else as stated, or the library's."""
-    return entry.salinity if salinity is None or entry.salinity == 0.0 else salinity
+    """Per mille of salt: as stated, else the library's; only water knows of any."""
+    return entry.salinity if salinity is None or not entry.is_water else salinity
 
 
 def library_index(entry: LibraryEntry, wavelength_nm: npt.ArrayLike, temperature_c: float, salinity: float) -> Floats:
     """Index of a library material relative to air. Only water knows temperature and salinity."""
-    if entry.law == "water":
+    if entry.is_water:
         return water_index(wavelength_nm, temperature_c, salinity)
     if entry.law == "sellmeier":
         return dispersion.sellmeier(wavelength_nm, entry.terms, entry.offset)
@@ -122,7 +122,7 @@ def index_at(
 ) -> Floats:
     """Index relative to air at any wavelengths in air, 370 to 790 nm; the shape of `wavelength_nm`.
 
-    `model` and `values` state a law; else `like` names a library material. Salinity is sea water's alone (None: 35).
+    `model` and `values` state a law; else `like` names a library material. Only water knows salinity (None: its own).
     InputError for a name, law or wavelength that is not known, and for a law that leaves 0.5 to 5.
     """
     wavelength = np.asarray(wavelength_nm, dtype=np.float64)

@@ -8,6 +8,7 @@ from renderer.optics.exact_functions import sine_cosine_deg
 from renderer.shot.model import Axes, Sky, Sun, Vector
 from renderer.shot.moment import Moment
 from renderer.shot.schema.flaws import Flaw
+from renderer.shot.schema.sun_and_sky import LOW_SUN_EXPECTED, LOWEST_SUN_DEG, SKIES_BY_SUN
 from renderer.shot.transforms import dot, unit
 
 
@@ -39,11 +40,21 @@ def resolve_sun(moment: Moment, axes: Axes) -> Sun | None:
             stated = axes.up
         direction = unit(stated)
         elevation, azimuth = angles_of(direction, axes)
+        _note_sunk_sun(moment, elevation)
         return Sun(direction, elevation, azimuth, visibility)
     assert keys.azimuth is not None
     assert keys.elevation is not None
     elevation, azimuth = moment.number(keys.elevation), moment.number(keys.azimuth)
     return Sun(direction_of(elevation, azimuth, axes), elevation, azimuth, visibility)
+
+
+def _note_sunk_sun(moment: Moment, elevation_deg: float) -> None:
+    """A flaw where `sun.direction` leads so far down that no sky is known for it; a stated elevation was checked."""
+    kind = moment.shot.sky.kind
+    if kind in SKIES_BY_SUN and elevation_deg < LOWEST_SUN_DEG:
+        where = f"{elevation_deg:.4g} degrees high in frame {moment.frame}"
+        what = f"`sun.direction` is {where}, and no {kind} sky is known for so low a sun"
+        moment.flaws.append(Flaw(("sun", "direction"), what, LOW_SUN_EXPECTED))
 
 
 def resolve_sky(moment: Moment) -> Sky:

@@ -40,6 +40,9 @@ def material_flaws(moment: Moment, name: str) -> list[Flaw]:
     from renderer.optics.materials import material_tables
 
     keys, material = moment.shot.materials[name], resolve_material(moment, name)
+    too_hot = _water_flaws(material, name, keys.model_fields_set)
+    if too_hot:
+        return too_hot
     law = material.dispersion
     model, values = (law.model, law.values) if law is not None else (None, ())
     try:
@@ -47,8 +50,23 @@ def material_flaws(moment: Moment, name: str) -> list[Flaw]:
         with np.errstate(all="ignore"):  # what comes out as not-a-number is refused in words
             material_tables(like, material.temperature_c, material.salinity, model, values, absorption)
     except InputError as error:
-        stated = [key for key in ("refractive_index", "temperature") if key in keys.model_fields_set]
-        return [Flaw(("materials", name, *stated[:1]), fault.what, fault.expected) for fault in error.faults]
+        stated = [key for key in ("refractive_index",) if key in keys.model_fields_set]
+        return [Flaw(("materials", name, *stated), fault.what, fault.expected) for fault in error.faults]
+    return []
+
+
+def _water_flaws(material: Material, name: str, stated: set[str]) -> list[Flaw]:
+    """Water as no table has it: too hot for the salt in it."""
+    from renderer.optics.library import library_entry
+    from renderer.optics.water import check_temperature
+
+    if material.like is None or not library_entry(material.like).is_water:
+        return []
+    try:
+        check_temperature(material.temperature_c, material.salinity)
+    except InputError as error:
+        keys = [key for key in ("temperature", "salinity") if key in stated]
+        return [Flaw(("materials", name, *keys[:1]), fault.what, fault.expected) for fault in error.faults]
     return []
 
 

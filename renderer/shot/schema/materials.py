@@ -14,6 +14,7 @@ from renderer.shot.schema.table import OneOf, Table, key
 
 INDEX = Bounds(0.5, 5.0)
 TERMS = Bounds(-1e6, 1e6)
+WATERS = 'like = "water" or "sea water"'
 
 
 class RefractiveIndex(Table):
@@ -72,8 +73,8 @@ class Material(Table):
     like: Annotated[MaterialName | None, Substance('the name of a material from "antisolar materials"')] = key(
         None, "A material of the library that this one starts from", '"water"'
     )
-    temperature: Annotated[Scalar, Number("degrees Celsius", Bounds(-100, 500))] = key(
-        20.0, "Of water and sea water, whose index depends on it", "12.0"
+    temperature: Annotated[Scalar, Number("degrees Celsius", Bounds(0, 60))] = key(
+        20.0, "Of water and sea water, whose index depends on it; up to 30 where there is salt in it", "12.0"
     )
     salinity: Annotated[Scalar | None, Number("per mille", Bounds(0, 42))] = key(
         None, "Of water and sea water", "35.0", "that of the material it is `like`"
@@ -90,5 +91,17 @@ class Material(Table):
         if "like" not in given and "refractive_index" not in given:
             yield Flaw((), "`like` or `refractive_index` is missing", "one of them, or both")
         for name in ("temperature", "salinity"):
-            if name in given and "like" not in given:
-                yield Flaw((name,), f"`{name}` does nothing without `like`", 'like = "water" or "sea water"')
+            if name not in given:
+                continue
+            if "like" not in given:
+                yield Flaw((name,), f"`{name}` does nothing without `like`", WATERS)
+            elif _no_water(given["like"]):
+                yield Flaw((name,), f'`{name}` does nothing in a material like "{given["like"].strip()}"', WATERS)
+
+
+def _no_water(like: Any) -> bool:
+    """Whether this is the name of a material of the library other than water and sea water."""
+    from renderer.optics.library import known_names
+
+    entry = known_names().get(like.strip().lower()) if isinstance(like, str) else None
+    return entry is not None and not entry.is_water

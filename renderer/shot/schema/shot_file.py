@@ -18,11 +18,10 @@ from renderer.shot.schema.matrices import each
 from renderer.shot.schema.names import repeated_names, unknown_materials
 from renderer.shot.schema.objects import Light, Object
 from renderer.shot.schema.render import Render
-from renderer.shot.schema.sun_and_sky import Sky, Sun
+from renderer.shot.schema.sun_and_sky import LOW_SUN_EXPECTED, LOWEST_SUN_DEG, SKIES_BY_SUN, Sky, Sun
 from renderer.shot.schema.table import Table, key
 from renderer.shot.schema.units import Frames, Units
 
-LOWEST_SUN_DEG = -12.0  # the end of nautical twilight, below which no published luminance of the sky is carried
 MOST_VARIANTS = 100  # each is checked with the whole shot
 MOST_OBJECTS = 65_535  # an object's number has 16 bits, and 0 stands for none
 
@@ -114,9 +113,9 @@ class ShotFile(Table):
     def _sunk_sun(self) -> Iterator[Flaw]:
         """A sun so far down that no sky is known for it."""
         height = self.sun.elevation if self.sun is not None else None
-        if self.sky.kind not in ("clear", "overcast") or height is None:
+        if self.sky.kind not in SKIES_BY_SUN or height is None:
             return
         for path, numbers in each(("sun", "elevation"), height if isinstance(height, Keys) else (height,)):
             if numbers[0] < LOWEST_SUN_DEG:
                 what = f"`{{key}}` is {numbers[0]:g}, and no {self.sky.kind} sky is known for so low a sun"
-                yield Flaw(path, what, f"{LOWEST_SUN_DEG:g} degrees or more, or another kind of sky")
+                yield Flaw(path, what, LOW_SUN_EXPECTED)

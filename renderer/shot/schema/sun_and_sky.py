@@ -12,6 +12,9 @@ from renderer.shot.schema.numbers import Bounds, Number, Vector
 from renderer.shot.schema.table import OneOf, Table, key
 
 KINDS = ("clear", "overcast", "uniform", "picture", "none")
+SKIES_BY_SUN = ("clear", "overcast")  # whose light goes by the height of the sun
+LOWEST_SUN_DEG = -12.0  # the end of nautical twilight, below which no published luminance of the sky is carried
+LOW_SUN_EXPECTED = f"{LOWEST_SUN_DEG:g} degrees or more, or another kind of sky"
 SCENE_LINEAR = ("rec709", "rec2020", "acescg", "xyz")
 
 

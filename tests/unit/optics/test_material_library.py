@@ -67,7 +67,8 @@ def test_water_knows_temperature_and_sea_water_salt():
     assert cold > warm + 0.001
     np.testing.assert_array_equal(index_at(500.0, "sea water"), water_index(500.0, 20.0, 35.0))
     np.testing.assert_array_equal(index_at(500.0, "sea water", salinity=0.0), water_index(500.0, 20.0, 0.0))
-    np.testing.assert_array_equal(index_at(500.0, "water", salinity=35.0), water_index(500.0, 20.0, 0.0))
+    np.testing.assert_array_equal(index_at(500.0, "water", salinity=35.0), water_index(500.0, 20.0, 35.0))
+    np.testing.assert_array_equal(index_at(500.0, "N-BK7", salinity=35.0), index_at(500.0, "N-BK7"))
     assert float(water_absorption_per_m(740.0, 5.0)) < float(water_absorption_per_m(740.0, 25.0))
     assert np.all(water_absorption_per_m(np.arange(380.0, 500.0), 0.0, 40.0) >= 0.0)
 
