@@ -19,8 +19,8 @@ import math
 import numpy as np
 
 from renderer.base.errors import Fault, InputError
+from renderer.base.exact_functions import LN2, exponential, logarithm
 from renderer.colour.tables import Floats
-from renderer.optics.exact_functions import LN2, exponential, logarithm
 
 MID_GREY = 0.18
 LENS_FACTOR = 0.65  # q of ISO 12232

@@ -7,8 +7,8 @@ from functools import cache
 import numpy as np
 
 from renderer.base.errors import Fault, InputError
+from renderer.base.exact_functions import exponential
 from renderer.colour.tables import Floats, frozen, resampled, shipped_table, wavelengths_nm
-from renderer.optics.exact_functions import exponential
 
 PLANCK_J_S = 6.62607015e-34  # exact, SI 2019
 LIGHT_SPEED_M_PER_S = 299792458.0  # exact, SI

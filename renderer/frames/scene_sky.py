@@ -11,7 +11,7 @@ from renderer.arrays import lights
 from renderer.arrays.packing import pack
 from renderer.base.constants import N_WAVELENGTHS
 from renderer.base.errors import Fault, InputError
-from renderer.optics.exact_functions import sine_cosine_deg
+from renderer.base.exact_functions import sine_cosine_deg
 from renderer.shot.model import Axes, FrameShot, Sky, Sun
 
 Floats = npt.NDArray[np.float64]

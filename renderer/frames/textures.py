@@ -97,7 +97,7 @@ def float_colours(path: Path, encoding: str) -> tuple[Floats, None, tuple[int, i
 
 def decoded(value: Floats) -> Floats:
     """sRGB to linear (IEC 61966-2-1:1999), the same to the bit on every machine, since textures enter pixels."""
-    from renderer.optics.exact_functions import power
+    from renderer.base.exact_functions import power
 
     return np.where(value <= 0.04045, value / 12.92, power((value + 0.055) / 1.055, 2.4))
 

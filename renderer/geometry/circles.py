@@ -4,8 +4,8 @@ from __future__ import annotations
 
 import numpy as np
 
+from renderer.base.exact_functions import sine_cosine_deg
 from renderer.geometry.positions import Floats
-from renderer.optics.exact_functions import sine_cosine_deg
 
 
 def circle(n: int) -> tuple[Floats, Floats]:

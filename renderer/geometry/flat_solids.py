@@ -5,8 +5,8 @@ from __future__ import annotations
 import numpy as np
 
 from renderer.arrays.assets import TriangleAsset
+from renderer.base.exact_functions import sine_cosine_deg
 from renderer.geometry.sheets import asset
-from renderer.optics.exact_functions import sine_cosine_deg
 
 Vector = tuple[float, float, float]
 

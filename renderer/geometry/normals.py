@@ -9,8 +9,8 @@ from __future__ import annotations
 import numpy as np
 import numpy.typing as npt
 
+from renderer.base.exact_functions import sine_cosine_deg
 from renderer.geometry.positions import Floats, Ids, Indices, position_groups
-from renderer.optics.exact_functions import sine_cosine_deg
 
 CREASE_DEG = 40.0  # faces that meet at a larger angle keep an edge between them; common practice, no source
 BLOCK = 262_144  # faces that are worked on at once, so that memory stays small

@@ -8,9 +8,9 @@ import numpy as np
 
 from renderer.arrays.assets import TriangleAsset
 from renderer.arrays.packing import pack
+from renderer.base.exact_functions import sine_cosine_deg
 from renderer.geometry.circles import circle
 from renderer.geometry.positions import Floats, Indices
-from renderer.optics.exact_functions import sine_cosine_deg
 
 Wave = tuple[float, float, float, float]
 

@@ -11,11 +11,11 @@ import math
 import numpy as np
 
 from renderer.arrays.assets import TriangleAsset
+from renderer.base.exact_functions import DEGREE, arccosine
 from renderer.geometry.circles import arc
 from renderer.geometry.flat_solids import box_between
 from renderer.geometry.round_solids import Lathe
 from renderer.geometry.sheets import asset
-from renderer.optics.exact_functions import DEGREE, arccosine
 
 Vector = tuple[float, float, float]
 

@@ -11,7 +11,7 @@ import numpy as np
 import numpy.typing as npt
 
 from renderer.base.errors import Fault, InputError
-from renderer.optics.exact_functions import exponential, power, sine_cosine_deg
+from renderer.base.exact_functions import exponential, power, sine_cosine_deg
 from renderer.optics.tables import between_lines, table_column
 
 Floats = npt.NDArray[np.float64]

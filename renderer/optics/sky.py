@@ -16,6 +16,7 @@ import numpy.typing as npt
 
 from renderer.base.constants import LUMINOUS_EFFICACY
 from renderer.base.errors import Fault, InputError
+from renderer.base.exact_functions import DEGREE, arccosine, exponential, sine_cosine_deg
 from renderer.optics.atmosphere import (
     ANGSTROM_EXPONENT,
     Air,
@@ -25,7 +26,6 @@ from renderer.optics.atmosphere import (
     rayleigh_depth,
     relative_air_mass,
 )
-from renderer.optics.exact_functions import DEGREE, arccosine, exponential, sine_cosine_deg
 from renderer.optics.skylight import (
     ASYMMETRY,
     GROUND_REFLECTANCE,

@@ -5,6 +5,7 @@ from __future__ import annotations
 import numpy as np
 import numpy.typing as npt
 
+from renderer.base.exact_functions import exponential, logarithm, power, sine_cosine_deg
 from renderer.optics.atmosphere import (
     SINGLE_SCATTERING_ALBEDO,
     Air,
@@ -15,7 +16,6 @@ from renderer.optics.atmosphere import (
     rayleigh_depth,
     relative_air_mass,
 )
-from renderer.optics.exact_functions import exponential, logarithm, power, sine_cosine_deg
 from renderer.optics.sun import irradiance_above_air
 
 Floats = npt.NDArray[np.float64]

@@ -8,8 +8,8 @@ import numpy as np
 import numpy.typing as npt
 
 from renderer.base.errors import Fault, InputError
+from renderer.base.exact_functions import sine_cosine_deg
 from renderer.optics.atmosphere import Air, air_over, beam_transmittance
-from renderer.optics.exact_functions import sine_cosine_deg
 from renderer.optics.tables import between_lines, render_wavelengths_nm, table_column
 
 Floats = npt.NDArray[np.float64]

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 
-from renderer.optics.exact_functions import sine_cosine_deg
+from renderer.base.exact_functions import sine_cosine_deg
 from renderer.shot.model import Axes, Sky, Sun, Vector
 from renderer.shot.moment import Moment
 from renderer.shot.schema.flaws import Flaw

@@ -5,7 +5,7 @@ from __future__ import annotations
 import math
 from functools import lru_cache
 
-from renderer.optics.exact_functions import sine_cosine_deg
+from renderer.base.exact_functions import sine_cosine_deg
 from renderer.shot.keyed import Keys, Values, between, values_at
 from renderer.shot.model import Vector
 from renderer.shot.schema.objects import Transform

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 
-from renderer.optics import exact_functions as exact
+from renderer.base import exact_functions as exact
 
 
 def test_exponential_and_logarithm():
