@@ -224,4 +224,4 @@ class Shape(Table):
     @property
     def round(self) -> bool:
         """Whether its flat triangles stand for something curved."""
-        return self.kind in ("cylinder", "lens", "bowl", "water_surface")
+        return self.kind in ("sphere", "cylinder", "lens", "bowl", "water_surface")

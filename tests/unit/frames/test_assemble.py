@@ -45,7 +45,7 @@ def test_lights_are_listed_by_power():
         assert lights.of_primitive[primitive].tolist() == rows
     assert len(lights.of_primitive) == 12 + 4
     assert (lights.of_primitive >= 0).sum() == 4
-    assert scene.reference_radiance == 1000.0
+    assert scene.reference_radiance == pytest.approx(1000.0, rel=1e-12)
     assert scene.object_names == ("room", "first", "second")
 
 
