@@ -255,8 +255,8 @@ transform = {{ rotation = [0, 45, 0] }}
 
 # Water's own colour.
 
-# Absorption of pure water at 20 C, per metre: J. D. Mason, M. T. Cone and E. S. Fry, Appl. Opt. 55, 7163 (2016), table 2;
-# above 510 nm R. Roettgers, Water Optical Properties Processor, absorption v3 (2016), after Pope and Fry 1997.
+# Absorption of pure water at 20 C, per metre: J. D. Mason, M. T. Cone and E. S. Fry, Appl. Opt. 55, 7163 (2016),
+# table 2; above 510 nm R. Roettgers, Water Optical Properties Processor, absorption v3 (2016), after Pope and Fry 1997.
 PURE_WATER = {450.0: 0.00808, 550.0: 0.0581, 650.0: 0.340}
 
 
