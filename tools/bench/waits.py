@@ -67,7 +67,8 @@ def main() -> None:
         small = folder / "small"
         antisolar("new", str(small))
         shot = next(small.rglob("*.shot.toml")) if small.is_dir() else next(folder.glob("small*.shot.toml"))
-        size = ("--frames", "1001", "--override", "camera.pixels=[64,36]", "--rounds", "1", "--overwrite", "--out", str(folder / "out"))
+        small_frame = ("--frames", "1001", "--override", "camera.pixels=[64,36]", "--rounds", "1")
+        size = (*small_frame, "--overwrite", "--out", str(folder / "out"))
         measure("antisolar --help", "--help")
         measure("render, 64 x 36, one round, compiled", "render", str(shot), *size)
         measure("check, 1,000 frames with two bows", "check", str(bows), codes=(0, 1))
