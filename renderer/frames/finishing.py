@@ -123,6 +123,7 @@ def picture_facts(shot: FrameShot, work: Work, finish: Finish, done: Accumulated
         "capShare": cap_share(work),
         "saturated": work.tally.get("saturated", 0),
         "setOverflow": work.tally.get("set_overflow", 0),
+        "unmatched": work.tally.get("unmatched", 0),
         "objects": _names(finish.scene.object_names),
         "materials": _names(finish.scene.material_names),
         "notes": " ".join(finish.scene.notes)[:MOST_NAMES_CHARACTERS],
