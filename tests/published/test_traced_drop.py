@@ -42,13 +42,14 @@ from tests.rendering import scene_of
 FAR = 2000.0
 SUN_RADIUS_DEG = 0.2666  # at 1 au: 959.63", IAU 2015 resolution B3
 STEP_DEG = 0.02
-# The camera looks along -z at a drop that just fills its field.
+# The camera looks along -z at a drop with a dark rim of two pixels round it: the pixels' filter reaches over their edges,
+# so that beside the picture's border the face of the drop would be sampled too thinly.
 SHOT = f"""
 title = "one drop"
 [camera]
 position = [0, 0, {FAR}]
 target = [0, 0, 0]
-focal_length = {18.0 * FAR}
+focal_length = {14.4 * FAR}
 sensor = [36, 36]
 pixels = [16, 16]
 [sky]
@@ -152,7 +153,9 @@ def bows_stand_right(shot: str, wavelength_nm: float, within_deg: float) -> None
 
 
 def ray_optics(polarised: bool) -> np.ndarray:
-    """The same profile by summing rays over the drop's face: reflected, and after one and two reflections inside.
+    """The same profile by summing rays over the drop's face: reflected, and after one to seven reflections inside.
+
+    The fifth bow (five reflections) lies on the second, and adds 4 % to its peak.
 
     H. C. van de Hulst, Light Scattering by Small Particles, 1957, 12.2-12.3, with Fresnel's powers of s and p kept
     apart, or averaged at each meeting as if light forgot its polarisation.
@@ -169,7 +172,7 @@ def ray_optics(polarised: bool) -> np.ndarray:
         if not polarised:
             s = p = 0.5 * (s + p)
         i, r = np.arccos(cosine), np.arccos(inner)
-        for k in range(3):
+        for k in range(8):
             turned = np.pi - 2.0 * i if k == 0 else 2.0 * (i - r) + k * (np.pi - 2.0 * r)
             power = 0.5 * (s + p) if k == 0 else 0.5 * ((1.0 - s) ** 2 * s**k + (1.0 - p) ** 2 * p**k)
             angle_deg = np.degrees(np.pi - np.arccos(np.cos(turned)))
@@ -185,9 +188,9 @@ def second_over_first(light: np.ndarray) -> float:
 
 
 def test_the_second_bow_is_a_seventh_as_bright_as_the_first() -> None:
-    """In luminance at 20 C under a sun of its true size: 0.143 by ray optics; 0.118 if polarisation were forgotten."""
-    _, light = profile(scene_of(SHOT.replace("WAVELENGTHS", "")), 5000, sun_radiance(40.0, 23.0))
+    """In luminance at 20 C under a sun of its true size: 0.148 by ray optics; 0.122 if polarisation were forgotten."""
+    _, light = profile(scene_of(SHOT.replace("WAVELENGTHS", "")), 15_000, sun_radiance(40.0, 23.0))
     found, right, wrong = second_over_first(light), *(second_over_first(ray_optics(kept)) for kept in (True, False))
-    assert right == pytest.approx(0.1427, abs=0.0005)
-    assert wrong == pytest.approx(0.1182, abs=0.0005)
-    assert found == pytest.approx(right, abs=0.004)
+    assert right == pytest.approx(0.148, abs=0.0005)
+    assert wrong == pytest.approx(0.122, abs=0.0005)
+    assert found == pytest.approx(0.148, abs=0.004)
