@@ -42,8 +42,8 @@ from tests.rendering import scene_of
 FAR = 2000.0
 SUN_RADIUS_DEG = 0.2666  # at 1 au: 959.63", IAU 2015 resolution B3
 STEP_DEG = 0.02
-# The camera looks along -z at a drop with a dark rim of two pixels round it: the pixels' filter reaches over their edges,
-# so that beside the picture's border the face of the drop would be sampled too thinly.
+# The camera looks along -z at a drop with a dark rim of two pixels round it: the pixels' filter reaches over their
+# edges, so that beside the picture's border the face of the drop would be sampled too thinly.
 SHOT = f"""
 title = "one drop"
 [camera]
