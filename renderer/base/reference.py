@@ -84,7 +84,12 @@ def unowned(context: Any, builder: Any, kind: Any, value: Any) -> Any:
 
 @intrinsic
 def refer(typing_context: Any, value: Any) -> Any:
-    """A reference to a named tuple (of arrays, numbers and such tuples), valid until the calling kernel returns."""
+    """A reference to a named tuple (of arrays, numbers and such tuples), valid until the calling kernel returns.
+
+    A reference is passed on as it is.
+    """
+    if isinstance(value, Reference):
+        return value(value), lambda context, builder, signature, arguments: arguments[0]
 
     def build(context: Any, builder: Any, signature: Any, arguments: Any) -> Any:
         slot = cgutils.alloca_once_value(builder, unowned(context, builder, value, arguments[0]))

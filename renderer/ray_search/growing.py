@@ -16,10 +16,12 @@ from renderer.ray_search.lanes import BALL_WIDTH, PACK_WIDTH
 from renderer.ray_search.tree import (
     BINS,
     ROOM_ROWS,
+    WIDTH,
     WORK_ROWS,
     blank_node,
     fill_packs,
     grow,
+    price,
     record_primitives,
     widen,
     write_child,
@@ -130,9 +132,11 @@ class Forest:
         # Full nodes over nodes of two leaves are the most that there can be: 4 nodes for 7 leaves.
         wide, leaves = np.empty((n * 5 // 8 + 2, 64), dtype=np.float32), np.empty((n, 2), dtype=np.int32)
         code = SPHERES if kind == BALLS else 0
+        costs = np.empty((2 * n, WIDTH), dtype=np.float32)
+        price(boxes, links, np.empty(2 * n, dtype=np.int32), costs)
         n_nodes, n_leaves, root = widen(
-            boxes, links, wide, wide.view(np.int32), self.n_nodes, leaves, self.n_leaves[kind], code,
-            np.empty(8, dtype=np.int64), np.empty((n, 2), dtype=np.int64),
+            boxes, links, costs, wide, wide.view(np.int32), self.n_nodes, leaves, self.n_leaves[kind], code,
+            np.empty(2 * WIDTH, dtype=np.int64), np.empty(2 * WIDTH, dtype=np.int64), np.empty((n, 2), dtype=np.int64),
         )  # fmt: skip
         self.nodes.append(wide[:n_nodes].copy())
         self.n_nodes += n_nodes

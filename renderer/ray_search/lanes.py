@@ -28,9 +28,9 @@ TREES = types.Tuple((NODES, PACKS, PACKS, WORDS, WORDS, PACKS, WORDS, PACKS))
 NODE_WIDTH, PACK_WIDTH, BALL_WIDTH = 64, 80, 40  # numbers in a row of World.nodes, packs and balls
 THREE_WHOLE = types.UniTuple(types.int64, 3)
 THREE_REAL = types.UniTuple(types.float64, 3)
-OUTWARD = 1.3e-7  # relative: more than twice what rounding to float32 loses
+OUTWARD = 2.4e-7  # relative: more than four times what rounding to float32 loses
 LATER = 1.0 + 4.0 * 2.0**-23  # more than the roundings to float32 lose on both sides of a box
-RAY_D, RAY_O, RAY_INVERSE, RAY_SINGLES = 0, 5, 10, 16  # where in its room a ray's numbers begin
+RAY_D, RAY_O, RAY_INVERSE, RAY_SINGLES = 0, 8, 16, 24  # where in its room a ray's numbers begin
 
 
 class Lanes:
@@ -85,6 +85,12 @@ class Lanes:
         function = cgutils.get_or_insert_function(self.builder.module, kind, "llvm.sqrt.v8f64")
         return Lanes(self.builder, self.builder.call(function, [self.value]))
 
+    def size(self) -> Lanes:
+        """Without sign, of four float64."""
+        kind = ir.FunctionType(self.value.type, [self.value.type])
+        function = cgutils.get_or_insert_function(self.builder.module, kind, "llvm.fabs.v4f64")
+        return Lanes(self.builder, self.builder.call(function, [self.value]))
+
     def bits(self) -> Any:
         """A comparison as a whole number, one bit a lane."""
         return self.builder.zext(self.builder.bitcast(self.value, I8), I64)
@@ -115,6 +121,12 @@ def loaded(builder: Any, pointer: Any, at: Any, kind: Any) -> Lanes:
     """Eight numbers from memory, `at` elements behind a pointer."""
     vector = ir.VectorType(kind, N)
     return Lanes(builder, builder.load(eight(builder, pointer, at, vector), align=4))
+
+
+def written(builder: Any, pointer: Any) -> None:
+    """Let the compiler believe that anything behind a pointer may have changed, so that it reads it from memory."""
+    kind = ir.FunctionType(ir.VoidType(), [pointer.type])
+    builder.call(ir.InlineAsm(kind, "", "r,~{memory}", side_effect=True), [pointer])
 
 
 def row_behind(builder: Any, data: Any, row: Any, width: int) -> Any:
@@ -234,6 +246,27 @@ def lane(typing_context: Any, room: Any, at: Any) -> Any:
 
 
 @intrinsic
+def set_lane(typing_context: Any, room: Any, at: Any, value: Any) -> Any:
+    """Write number `at` of a room."""
+
+    def generate(context: Any, builder: Any, signature: Any, args: Any) -> Any:
+        builder.store(args[2], builder.gep(args[0], [args[1]]))
+        return context.get_dummy_value()
+
+    return types.void(REAL, types.int64, types.float64), generate
+
+
+@intrinsic
+def wholes(typing_context: Any, room: Any) -> Any:
+    """A room read as whole numbers."""
+
+    def generate(context: Any, builder: Any, signature: Any, args: Any) -> Any:
+        return builder.bitcast(args[0], I64.as_pointer())
+
+    return WHOLE(REAL), generate
+
+
+@intrinsic
 def first_bit(typing_context: Any, mask: Any) -> Any:
     """Place of the lowest bit that is set."""
 
@@ -283,12 +316,12 @@ def prepare(typing_context: Any, origin: Any, direction: Any, room: Any) -> Any:
             write(more, at + 4)
         write(inverse.value, RAY_INVERSE)
         write(builder.extract_element(inverse.value, I32(1)), RAY_INVERSE + 4)
-        x = Lanes(builder, builder.fpext(single(inverse), ir.VectorType(F64, 4)))
-        a = same(0.0) - origin * x
-        size = a.is_("<", same(0.0)).where(same(0.0) - a, a) * same(OUTWARD)
-        later = same(LATER)
-        for k, numbers in enumerate((a - size, (a + size) * later, x, x * later)):
+        a = origin * inverse
+        size = a.size()
+        near, far = size * same(-OUTWARD) - a, size * same(OUTWARD * LATER) - a * same(LATER)
+        for k, numbers in enumerate((near, far, inverse, inverse * same(LATER))):
             write(single(numbers), RAY_SINGLES + 2 * k)
+        written(builder, args[2])
         return builder.zext(builder.bitcast(negative.value, ir.IntType(4)), I64)
 
     return types.int64(THREE_REAL, THREE_REAL, REAL), generate
@@ -413,9 +446,7 @@ def triangles_hit(
 
 
 @intrinsic
-def spheres_hit(
-    typing_context: Any, balls: Any, pack: Any, origin: Any, direction: Any, least: Any, most: Any, room: Any
-) -> Any:
+def spheres_hit(typing_context: Any, balls: Any, pack: Any, ray: Any, least: Any, most: Any, room: Any) -> Any:
     """Which of a pack's eight spheres a ray is inside of at some distance in [least, most], a bit each.
 
     Both distances, near and far, are left in the room, eight each; the direction need not be unit; a mere touch counts
@@ -425,11 +456,13 @@ def spheres_hit(
 
     def generate(context: Any, builder: Any, signature: Any, args: Any) -> Any:
         numbers = row_behind(builder, args[0], args[1], BALL_WIDTH)
-        f = [
-            splat(builder, value) - loaded(builder, numbers, 8 * k, F64)
-            for k, value in enumerate(cgutils.unpack_tuple(builder, args[2], 3))
-        ]
-        d = [splat(builder, value) for value in cgutils.unpack_tuple(builder, args[3], 3)]
+        written(builder, args[2])
+
+        def of_ray(at: int) -> Lanes:
+            return splat(builder, builder.load(builder.gep(args[2], [I64(at)])))
+
+        f = [of_ray(RAY_O + k) - loaded(builder, numbers, 8 * k, F64) for k in range(3)]
+        d = [of_ray(RAY_D + k) for k in range(3)]
         radius = loaded(builder, numbers, 24, F64)
         zero = constant(builder, F64, 0.0)
         a = d[0] * d[0] + d[1] * d[1] + d[2] * d[2]
@@ -446,13 +479,13 @@ def spheres_hit(
             q = b.is_(">=", zero).where(b + root, b - root)
             first, second = c / q, q / a
             near, far = first.least(second), first.most(second)
-            near.store(args[6])
-            far.store(args[6], 1)
-            within = near.is_("<=", splat(builder, args[5])) & far.is_(">=", splat(builder, args[4]))
+            near.store(args[5])
+            far.store(args[5], 1)
+            within = near.is_("<=", splat(builder, args[4])) & far.is_(">=", splat(builder, args[3]))
             builder.store(builder.and_(mask, (within & near.is_("<", far)).bits()), found)
         return builder.load(found)
 
-    arguments = (PACKS, types.int64, THREE_REAL, THREE_REAL, types.float64, types.float64, REAL)
+    arguments = (PACKS, types.int64, REAL, types.float64, types.float64, REAL)
     return types.int64(*arguments), generate
 
 

@@ -9,6 +9,7 @@ import numpy as np
 from renderer.arrays.looks import CLEAR, SHEET
 from renderer.arrays.world import NOTHING, ROOT, SPHERES
 from renderer.base.jit import kernel
+from renderer.base.reference import refer
 from renderer.base.vectors import dot
 from renderer.ray_search.hits import hit_frame
 from renderer.ray_search.lanes import (
@@ -29,14 +30,20 @@ from renderer.ray_search.lanes import (
     prefetch,
     prepare,
     put,
+    set_lane,
     single_bits,
     spheres_hit,
     triangles_hit,
+    wholes,
     word_at,
 )
 from renderer.ray_search.object_set import set_item, set_with, set_without
 from renderer.ray_search.places import carry, matrix_at, steepest, trees_of, turn
 
+# Where in a query's room its numbers are: the best hit so far, and what counts as one. Kept in memory, since a search
+# touches them seldom, and needs its registers for boxes.
+T, U, V, WEIGHT, T_NEXT, T_MAX, T_AFTER = 0, 1, 2, 3, 4, 5, 6
+INSTANCE, PRIMITIVE, SKIP_INSTANCE, SKIP_PRIMITIVE, INSTANCE_AFTER, PRIMITIVE_AFTER = 8, 9, 10, 11, 12, 13
 ROUNDING = 1.5e-11  # share of a ray's numbers that joins touch_m: see `hits.error_of` for where both come from
 MAX_WALK = 4096  # hits that a point query follows
 NEAR_EDGE = 1e-9  # barycentric, and cosine to the surface, under which a crossing may be counted wrongly
@@ -53,15 +60,42 @@ def farther(t, instance, primitive, t2, instance2, primitive2):
 
 
 @kernel
-def offered(best, limits, t, instance, primitive, u, v):
-    """The best hit so far (t, instance, primitive, u, v, next t) after one more is found."""
-    t_max, _, _, t_after, i_after, p_after, _, _ = limits
-    if not (t >= t_after and t <= t_max) or not farther(t, instance, primitive, t_after, i_after, p_after):
-        return best
-    if best[1] >= 0 and farther(t, instance, primitive, best[0], best[1], best[2]):
-        return best[0], best[1], best[2], best[3], best[4], min(best[5], t)
-    after = best[0] if best[1] >= 0 else math.inf
-    return t, instance, primitive, u, v, after
+def ask(t_max, skip_instance, skip_primitive, t_after, instance_after, primitive_after, query):
+    """Write a query: what counts as a hit. Nothing is found yet, which is a hit at `t_max`."""
+    set_lane(query, T, t_max)
+    set_lane(query, T_NEXT, math.inf)
+    set_lane(query, T_MAX, t_max)
+    set_lane(query, T_AFTER, t_after)
+    whole = wholes(query)
+    put(whole, INSTANCE, -1)
+    put(whole, PRIMITIVE, -1)
+    put(whole, SKIP_INSTANCE, skip_instance)
+    put(whole, SKIP_PRIMITIVE, skip_primitive)
+    put(whole, INSTANCE_AFTER, instance_after)
+    put(whole, PRIMITIVE_AFTER, primitive_after)
+
+
+@kernel
+def offer(query, t, instance, primitive, u, v, whole_weight):
+    """Let a query know of one more hit; u and v are parts of `whole_weight`."""
+    whole = wholes(query)
+    t_after = lane(query, T_AFTER)
+    if not (t >= t_after and t <= lane(query, T_MAX)):
+        return
+    if not farther(t, instance, primitive, t_after, get(whole, INSTANCE_AFTER), get(whole, PRIMITIVE_AFTER)):
+        return
+    best = lane(query, T)
+    if get(whole, INSTANCE) >= 0:
+        if farther(t, instance, primitive, best, get(whole, INSTANCE), get(whole, PRIMITIVE)):
+            set_lane(query, T_NEXT, min(lane(query, T_NEXT), t))
+            return
+        set_lane(query, T_NEXT, best)
+    set_lane(query, T, t)
+    set_lane(query, U, u)
+    set_lane(query, V, v)
+    set_lane(query, WEIGHT, whole_weight)
+    put(whole, INSTANCE, instance)
+    put(whole, PRIMITIVE, primitive)
 
 
 @kernel
@@ -94,46 +128,37 @@ def push_children(nodes, packs, mask, room, stack, top):
 
 
 @kernel
-def take_triangles(packs, at, mask, instance, limits, best, room):
-    """The best hit after the triangles of a pack whose bits are set."""
+def take_triangles(packs, at, mask, instance, query, room):
+    """Offer the triangles of a pack whose bits are set."""
+    whole = wholes(query)
     while mask != 0:
         k = first_bit(mask)
         mask &= mask - 1
         owner = instance if instance >= 0 else number(packs, at, k)
         primitive = number(packs, at, k + 8)
-        if owner != limits[1] or primitive != limits[2]:
-            det = lane(room, k + 24)
-            u, v = lane(room, k + 8) / det, lane(room, k + 16) / det
-            best = offered(best, limits, lane(room, k), owner, primitive, u, v)
-    return best
+        if owner != get(whole, SKIP_INSTANCE) or primitive != get(whole, SKIP_PRIMITIVE):
+            u, v, det = lane(room, k + 8), lane(room, k + 16), lane(room, k + 24)
+            offer(query, lane(room, k), owner, primitive, u, v, det)
 
 
 @kernel
-def take_spheres(balls, at, mask, instance, limits, best, room):
-    """The best hit after the spheres of a pack whose bits are set: the near side of each, and the far one."""
+def take_spheres(balls, at, mask, instance, query, room):
+    """Offer the spheres of a pack whose bits are set: the near side of each, and the far one."""
+    whole = wholes(query)
     while mask != 0:
         k = first_bit(mask)
         mask &= mask - 1
         owner = instance if instance >= 0 else number(balls, at, k)
         primitive = number(balls, at, k + 8)
-        if owner != limits[1] or primitive != limits[2]:
-            best = offered(best, limits, lane(room, k), owner, primitive, 0.0, 0.0)
-        best = offered(best, limits, lane(room, k + 8), owner, primitive, 0.0, 0.0)
-    return best
+        if owner != get(whole, SKIP_INSTANCE) or primitive != get(whole, SKIP_PRIMITIVE):
+            offer(query, lane(room, k), owner, primitive, 0.0, 0.0, 1.0)
+        offer(query, lane(room, k + 8), owner, primitive, 0.0, 0.0, 1.0)
 
 
 @kernel
-def meet_spheres(balls, pack, instance, origin, direction, limits, best, room):
-    """The best hit after a pack of spheres."""
-    mask = spheres_hit(balls, pack, origin, direction, limits[3], best[0] + limits[6], room)
-    if mask != 0:
-        return take_spheres(balls, BALL_WIDTH * pack + 32, mask, instance, limits, best, room)
-    return best
-
-
-@kernel
-def walk(trees, root, instance, ox, oy, oz, dx, dy, dz, limits, best):
-    """The best hit after all primitives of one tree, or after the first hit where any will do."""
+def walk(world, root, instance, ox, oy, oz, dx, dy, dz, touch, any_will_do, query):
+    """Offer all primitives of one tree that the ray meets, or those up to the first that counts where any will do."""
+    trees = trees_of(world)
     nodes, packs, balls = trees[0], trees[1], trees[2]
     stack, entries, room, ray = new_stack(), new_room(), new_room(), new_room()
     near = near_planes(prepare((ox, oy, oz), (dx, dy, dz), ray))
@@ -142,27 +167,45 @@ def walk(trees, root, instance, ox, oy, oz, dx, dy, dz, limits, best):
     scale = lane(ray, RAY_INVERSE + axis)
     shear = (lane(ray, RAY_D + axis + 1) * scale, lane(ray, RAY_D + axis + 2) * scale, scale)
     origin = (lane(ray, RAY_O + axis + 1), lane(ray, RAY_O + axis + 2), lane(ray, RAY_O + axis))
-    axes = (24 * (axis + 1 if axis < 2 else axis - 2), 24 * (axis + 2 if axis < 1 else axis - 1), 24 * axis)
+    # Axes 1, 2, 0 and 2, 0, 1 as pairs of bits: again no branch.
+    axes = (24 * ((0b001001 >> (axis << 1)) & 3), 24 * ((0b010010 >> (axis << 1)) & 3), 24 * axis)
     top, child = np.int64(0), root
-    reach = rounded_up(best[0] + limits[6])
+    reach = rounded_up(lane(query, T) + touch)
     while True:
         if child >= 0:
             mask = children_hit(nodes, child, near, ray, reach, entries)
-            if mask != 0 and mask & (mask - 1) == 0:
-                child = (entry(entries, first_bit(mask)) << 32) >> 32
-                continue
-            top = push_children(nodes, packs, mask, entries, stack, top)
+            if mask != 0:
+                # Mostly one or two are met: then the nearer is next, without the stack.
+                rest = mask & (mask - 1)
+                first = entry(entries, first_bit(mask))
+                if rest == 0:
+                    child = (first << 32) >> 32
+                    continue
+                if rest & (rest - 1) == 0:
+                    second = entry(entries, first_bit(rest))
+                    later = max(first, second)
+                    prefetch(nodes, packs, (later << 32) >> 32)
+                    put(stack, top, later)
+                    top += 1
+                    child = (min(first, second) << 32) >> 32
+                    continue
+                top = push_children(nodes, packs, mask, entries, stack, top)
         else:
             pack = -1 - child
+            least, most = lane(query, T_AFTER), lane(query, T) + touch
             if pack < SPHERES:
-                mask = triangles_hit(packs, pack, axes, origin, shear, limits[3], best[0] + limits[6], room)
+                mask = triangles_hit(packs, pack, axes, origin, shear, least, most, room)
                 if mask != 0:
-                    best = take_triangles(packs, PACK_WIDTH * pack + 72, mask, instance, limits, best, room)
+                    take_triangles(packs, PACK_WIDTH * pack + 72, mask, instance, query, room)
             else:
-                best = meet_spheres(balls, pack - SPHERES, instance, (ox, oy, oz), (dx, dy, dz), limits, best, room)
-            if limits[7] and best[1] >= 0:
-                return best
-            reach = rounded_up(best[0] + limits[6])
+                pack -= SPHERES
+                mask = spheres_hit(balls, pack, ray, least, most, room)
+                if mask != 0:
+                    take_spheres(balls, BALL_WIDTH * pack + 32, mask, instance, query, room)
+            if mask != 0:
+                if any_will_do and get(wholes(query), INSTANCE) >= 0:
+                    return
+                reach = rounded_up(lane(query, T) + touch)
         limit = single_bits(reach)
         found = np.int64(-1)
         while top > 0 and found < 0:
@@ -171,22 +214,23 @@ def walk(trees, root, instance, ox, oy, oz, dx, dy, dz, limits, best):
             if (found >> 32) > limit:
                 found = np.int64(-1)
         if found < 0:
-            return best
+            return
         child = (found << 32) >> 32
 
 
 @kernel
-def walk_instances(trees, ox, oy, oz, dx, dy, dz, time, limits, best):
-    """The best hit after all instances that have a tree of their own."""
+def walk_instances(world, root, ox, oy, oz, dx, dy, dz, time, touch, any_will_do, query):
+    """Offer what the ray meets of all instances that have a tree of their own."""
+    trees = trees_of(world)
     stack, entries, ray = new_stack(), new_room(), new_room()
     near = near_planes(prepare((ox, oy, oz), (dx, dy, dz), ray))
-    put(stack, 0, word_at(trees[6], 1) & np.int64(0xFFFFFFFF))
+    put(stack, 0, root & np.int64(0xFFFFFFFF))
     top = np.int64(1)
-    while top > 0 and not (limits[7] and best[1] >= 0):
+    while top > 0 and not (any_will_do and get(wholes(query), INSTANCE) >= 0):
         top -= 1
         found = get(stack, top)
         child = (found << 32) >> 32
-        reach = rounded_up(best[0] + limits[6])
+        reach = rounded_up(lane(query, T) + touch)
         if (found >> 32) > single_bits(reach):
             continue
         if child >= 0:
@@ -197,24 +241,22 @@ def walk_instances(trees, ox, oy, oz, dx, dy, dz, time, limits, best):
         _, w, _ = matrix_at(trees, instance, time)
         px, py, pz = carry(w, ox, oy, oz)
         qx, qy, qz = turn(w, dx, dy, dz)
-        best = walk(
-            trees, word_at(trees[4], 8 * instance + ROOT), instance, px, py, pz, qx, qy, qz, limits, best
-        )  # fmt: skip
-    return best
+        own = word_at(trees[4], 8 * instance + ROOT)
+        walk(world, own, instance, px, py, pz, qx, qy, qz, touch, any_will_do, query)
 
 
 @kernel
-def search(trees, ox, oy, oz, dx, dy, dz, time, limits):
-    """The best hit in the whole world: (t, instance, primitive, u, v, t of the next); instance -1 for none."""
-    best = (limits[0], np.int64(-1), np.int64(-1), 0.0, 0.0, math.inf)
-    if not limits[0] >= 0.0:
-        return best
-    root = word_at(trees[6], 0)
+def search(world, ox, oy, oz, dx, dy, dz, time, touch, any_will_do, query):
+    """Answer a query in the whole world."""
+    roots = trees_of(world)[6]
+    if not lane(query, T) >= 0.0:
+        return
+    root = word_at(roots, 0)
     if root != NOTHING:
-        best = walk(trees, root, np.int64(-1), ox, oy, oz, dx, dy, dz, limits, best)
-    if word_at(trees[6], 1) != NOTHING and not (limits[7] and best[1] >= 0):
-        best = walk_instances(trees, ox, oy, oz, dx, dy, dz, time, limits, best)
-    return best
+        walk(world, root, np.int64(-1), ox, oy, oz, dx, dy, dz, touch, any_will_do, query)
+    root = word_at(roots, 1)
+    if root != NOTHING and not (any_will_do and get(wholes(query), INSTANCE) >= 0):
+        walk_instances(world, root, ox, oy, oz, dx, dy, dz, time, touch, any_will_do, query)
 
 
 @kernel
@@ -231,26 +273,32 @@ def closest_hit(
     third corner. `crowded`: the next hit lies so close behind that both may be one boundary.
     """
     touch = world.touch_m[0] + ROUNDING * (abs(ox) + abs(oy) + abs(oz))
-    limits = (
-        np.float64(t_max), np.int64(skip_instance), np.int64(skip_primitive),
-        np.float64(t_after), np.int64(instance_after), np.int64(primitive_after), touch, False,
+    query = new_room()
+    ask(
+        np.float64(t_max), np.int64(skip_instance), np.int64(skip_primitive), np.float64(t_after),
+        np.int64(instance_after), np.int64(primitive_after), query,
     )  # fmt: skip
-    t, instance, primitive, u, v, t_next = search(trees_of(world), ox, oy, oz, dx, dy, dz, time, limits)
+    search(refer(world), ox, oy, oz, dx, dy, dz, np.float64(time), touch, False, query)
+    whole = wholes(query)
+    instance, primitive = get(whole, INSTANCE), get(whole, PRIMITIVE)
     if instance < 0:
-        return math.inf, instance, primitive, u, v, False
-    return t, instance, primitive, u, v, t_next - t <= touch
+        return math.inf, instance, primitive, 0.0, 0.0, False
+    t, weight = lane(query, T), lane(query, WEIGHT)
+    u, v = lane(query, U) / weight, lane(query, V) / weight
+    return t, instance, primitive, u, v, lane(query, T_NEXT) - t <= touch
 
 
 @kernel
 def any_hit(world, ox, oy, oz, dx, dy, dz, time, t_max, skip_instance, skip_primitive):
     """Some hit at a distance in (0, t_max), as (instance, primitive); (-1, -1) where there is none."""
-    none = np.int64(1) << np.int64(40)
-    limits = (
-        np.nextafter(np.float64(t_max), 0.0), np.int64(skip_instance), np.int64(skip_primitive),
-        0.0, none, none, 0.0, True,
+    query = new_room()
+    ask(
+        np.nextafter(np.float64(t_max), 0.0), np.int64(skip_instance), np.int64(skip_primitive), 0.0,
+        np.int64(1) << np.int64(40), np.int64(-1), query,
     )  # fmt: skip
-    best = search(trees_of(world), ox, oy, oz, dx, dy, dz, time, limits)
-    return best[1], best[2]
+    search(refer(world), ox, oy, oz, dx, dy, dz, np.float64(time), 0.0, True, query)
+    whole = wholes(query)
+    return get(whole, INSTANCE), get(whole, PRIMITIVE)
 
 
 @kernel

@@ -17,10 +17,10 @@ BLOCK = 1 << SHIFT
 
 
 @kernel
-def trace_block(world, origins, directions, time, t_max, first, last, t, ids, uv):
-    """The closest hits of the rays from `first` up to `last`."""
+def trace_block(world, origins, directions, time, t_max, t, ids, uv):
+    """The closest hits of rays, one after another."""
     place = refer(world)
-    for k in range(first, last):
+    for k in range(origins.shape[0]):
         d, i, p, u, v, crowded = closest_hit(
             place, origins[k, 0], origins[k, 1], origins[k, 2], directions[k, 0], directions[k, 1], directions[k, 2],
             time, t_max, -1, -1, 0.0, -1, -1,
@@ -34,16 +34,15 @@ def trace_closest(world, origins, directions, time, t_max, t, ids, uv):
     """The closest hits of all rays."""
     n = origins.shape[0]
     for block in prange((n + BLOCK - 1) >> SHIFT):
-        trace_block(
-            world, origins, directions, time, t_max, block * BLOCK, min(block * BLOCK + BLOCK, n), t, ids, uv
-        )  # fmt: skip
+        i, j = block * BLOCK, min(block * BLOCK + BLOCK, n)
+        trace_block(world, origins[i:j], directions[i:j], time, t_max, t[i:j], ids[i:j], uv[i:j])
 
 
 @kernel
-def any_block(world, origins, directions, time, t_max, first, last, ids):
-    """Some hit of each of the rays from `first` up to `last`."""
+def any_block(world, origins, directions, time, t_max, ids):
+    """Some hit of each of the rays, one after another."""
     place = refer(world)
-    for k in range(first, last):
+    for k in range(origins.shape[0]):
         ids[k, 0], ids[k, 1] = any_hit(
             place, origins[k, 0], origins[k, 1], origins[k, 2], directions[k, 0], directions[k, 1], directions[k, 2],
             time, t_max, -1, -1,
@@ -55,7 +54,8 @@ def trace_any(world, origins, directions, time, t_max, ids):
     """Some hit of each ray."""
     n = origins.shape[0]
     for block in prange((n + BLOCK - 1) >> SHIFT):
-        any_block(world, origins, directions, time, t_max, block * BLOCK, min(block * BLOCK + BLOCK, n), ids)
+        i, j = block * BLOCK, min(block * BLOCK + BLOCK, n)
+        any_block(world, origins[i:j], directions[i:j], time, t_max, ids[i:j])
 
 
 def trace_rays(

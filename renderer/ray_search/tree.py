@@ -22,6 +22,7 @@ FEW, FEW_BINS = 48, 8  # nodes of few records take fewer bins: there are many of
 DEEP = 40  # depth from which nodes are halved by count, so that a search's stack is never too small
 MIDDLE, BOX, RIGHT = 3 * BINS, 3 * BINS + 1, 3 * BINS + 2  # rows of the room to work in, behind the bins
 ROOM_ROWS = 3 * BINS + 3
+WIDTH = 8  # children of a wide node
 WORK_ROWS = 128
 DOWN = 1.9e-7  # relative: three roundings to float32: that of the number, and two where a machine cannot fuse
 TINY = 1e-37
@@ -173,20 +174,73 @@ def grow(records, boxes, links, room, counts, costs, work, tasks, first_task, sm
 
 
 @kernel
-def open_children(boxes, links, children):
-    """Replace the largest inner child by its two until there are eight or none is left; gives how many there are."""
-    n = 1
-    while n < 8:
-        largest, at = np.float32(-1.0), -1
-        for k in range(n):
-            if links[children[k], 0] < 0 and half_area(boxes, children[k]) > largest:
-                largest, at = half_area(boxes, children[k]), k
-        if at < 0:
-            break
-        opened = children[at]
-        children[at] = opened + 1
-        children[n] = links[opened, 1]
-        n += 1
+def cheapest_cut(costs, left, right, n):
+    """How many of n children two subtrees together should give the left one, and the cost of that."""
+    best, share = np.float32(math.inf), np.int64(1)
+    for k in range(max(1, n - WIDTH), min(n - 1, WIDTH) + 1):
+        cost = costs[left, k - 1] + costs[right, n - k - 1]
+        if cost < best:
+            best, share = cost, k
+    return share, best
+
+
+@kernel
+def price(boxes, links, order, costs):
+    """Costs (node, n): the least area of all wide nodes below a node that hangs on its parents by n children at most.
+
+    Ylitie, Karras & Laine, "Efficient Incoherent Ray Traversal on GPUs Through Compressed Wide BVHs", HPG 2017, 3.1;
+    the leaves are given. `order` is room for the nodes' numbers, parents first.
+    """
+    order[0] = 0
+    n_nodes, k = np.int64(1), np.int64(0)
+    while k < n_nodes:
+        node = order[k]
+        k += 1
+        if links[node, 0] < 0:
+            order[n_nodes], order[n_nodes + 1] = node + 1, links[node, 1]
+            n_nodes += 2
+    for k in range(n_nodes - 1, -1, -1):
+        node = order[k]
+        if links[node, 0] >= 0:
+            for n in range(WIDTH):
+                costs[node, n] = np.float32(0.0)
+            continue
+        left, right = node + 1, np.int64(links[node, 1])
+        _, whole = cheapest_cut(costs, left, right, WIDTH)
+        costs[node, 0] = half_area(boxes, node) + whole
+        for n in range(2, WIDTH + 1):
+            _, cost = cheapest_cut(costs, left, right, n)
+            costs[node, n - 1] = min(cost, costs[node, n - 2])
+
+
+@kernel
+def halve(links, costs, node, share, children, shares, at):
+    """Write a node's two children, and how many wide children each may become, before place `at`."""
+    left, right = node + 1, np.int64(links[node, 1])
+    k, _ = cheapest_cut(costs, left, right, share)
+    children[at - 1], shares[at - 1] = right, share - k
+    children[at - 2], shares[at - 2] = left, k
+
+
+@kernel
+def open_children(links, costs, children, shares):
+    """Put what should hang on the node children[0] to the front of `children`; gives how many there are.
+
+    Those still to be halved wait at the end; `shares` is room of the same size.
+    """
+    n, at, end = np.int64(0), children.shape[0] - 2, children.shape[0]
+    halve(links, costs, children[0], WIDTH, children, shares, end)
+    while at < end:
+        node, share = children[at], shares[at]
+        at += 1
+        while share > 1 and costs[node, share - 1] == costs[node, share - 2]:
+            share -= 1
+        if share == 1:
+            children[n] = node
+            n += 1
+        else:
+            halve(links, costs, node, share, children, shares, at)
+            at -= 2
     return n
 
 
@@ -212,7 +266,7 @@ def blank_node(nodes, links32, node):
 
 
 @kernel
-def widen(boxes, links, nodes, links32, first_node, leaves, first_leaf, code, children, work):
+def widen(boxes, links, costs, nodes, links32, first_node, leaves, first_leaf, code, children, shares, work):
     """Write the tree of nodes with eight children from node `first_node` on, and its leaves (start, end) from
     `first_leaf` on; their numbers as children have `code` added. Returns nodes and leaves used in all, and the root.
     """
@@ -226,7 +280,7 @@ def widen(boxes, links, nodes, links32, first_node, leaves, first_leaf, code, ch
         top -= 1
         children[0] = work[top, 0]
         node = work[top, 1]
-        n = open_children(boxes, links, children)
+        n = open_children(links, costs, children, shares)
         blank_node(nodes, links32, node)
         for k in range(n):
             child = children[k]

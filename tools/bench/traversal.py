@@ -132,9 +132,9 @@ def compare(name: str, world: World, other: EmbreeScene, rays: Rays, repeats: in
 
     def ours() -> None:
         if any_hit:
-            any_block(world, rays.origins, rays.directions, 0.0, math.inf, 0, n, ids)
+            any_block(world, rays.origins, rays.directions, 0.0, math.inf, ids)
         else:
-            trace_block(world, rays.origins, rays.directions, 0.0, math.inf, 0, n, t, ids, uv)
+            trace_block(world, rays.origins, rays.directions, 0.0, math.inf, t, ids, uv)
 
     def theirs() -> object:
         return other.run(o32, d32, query="OCCLUDED" if any_hit else "INTERSECT")
