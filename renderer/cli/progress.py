@@ -10,7 +10,7 @@ from typing import Any
 
 import click
 
-from renderer.cli.talk import Talk
+from renderer.cli.talk import Talk, counted
 from renderer.frames import events
 
 LINE_EVERY_S = 5.0  # between plain lines of one frame
@@ -69,7 +69,7 @@ class Follow:
             case events.FrameStarted():
                 place = f" ({self.n_started} of {self.n_frames})" if self.n_frames > 1 else ""
                 kept = f", {event.kept_rounds} kept from before" if event.kept_rounds else ""
-                return [f"frame {event.frame}{place}: {event.wanted_rounds} rounds{kept}"]
+                return [f"frame {event.frame}{place}: {counted(event.wanted_rounds, 'round')}{kept}"]
             case events.Compiling():
                 return ["compiling, once per install: about a minute"]
             case events.SceneReady():
@@ -78,12 +78,11 @@ class Follow:
             case events.Warned():
                 return [f"frame {event.frame}: {event.text}"]
             case events.FrameSkipped():
-                return [
-                    f"frame {event.frame}: there already, with {event.rounds} rounds (--overwrite renders it afresh)"
-                ]
+                there = f"there already, with {counted(event.rounds, 'round')} (--overwrite renders it afresh)"
+                return [f"frame {event.frame}: {there}"]
             case events.PictureSaved():
                 return [
-                    f"frame {event.frame}: {event.rounds} rounds in {span(event.seconds)}"
+                    f"frame {event.frame}: {counted(event.rounds, 'round')} in {span(event.seconds)}"
                     + (f", stopped by {event.stopped_by}" if event.stopped_by != "rounds" else "")
                 ]
             case events.PortionSaved():
@@ -118,7 +117,7 @@ class Follow:
         share = min(1.0, done / wanted) if wanted else 0.0
         filled = int(share * BAR)
         place = f" ({self.n_started}/{self.n_frames})" if self.n_frames > 1 else ""
-        words = f"frame {frame}{place} [{'#' * filled}{'.' * (BAR - filled)}] {int(done)}/{wanted} rounds"
+        words = f"frame {frame}{place} [{'#' * filled}{'.' * (BAR - filled)}] {int(done)} of {counted(wanted, 'round')}"
         if error is not None:
             words += f", standard error {error:.2%}"
         click.echo(_CLEAR + words + self._left(done, wanted), err=True, nl=False)

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING, Any
 import click
 
 from renderer.cli import exit_codes
-from renderer.cli.talk import Talk
+from renderer.cli.talk import Talk, counted
 
 if TYPE_CHECKING:
     from renderer.frames.options import RenderOptions
@@ -78,6 +78,6 @@ def plan_row(shot: FrameShot, out: Path, options: RenderOptions) -> dict[str, An
         "rounds": rounds,
         "pixels": [columns, rows],
         "fingerprint": shot.fingerprint,
-        "line": f"frame {shot.frame}: {rounds} rounds of {columns} x {rows}{portion} to {path}"
+        "line": f"frame {shot.frame}: {counted(rounds, 'round')} of {columns} x {rows}{portion} to {path}"
         + (" (a picture is there)" if there else ""),
     }

@@ -41,3 +41,8 @@ class Talk:
     def live(self) -> bool:
         """Whether a bar that redraws itself has a terminal to do so on."""
         return not self.quiet and not self.as_json and sys.stderr.isatty() and os.environ.get("TERM") != "dumb"
+
+
+def counted(n: int, thing: str) -> str:
+    """A number of things in words: 1 round, 2 rounds."""
+    return f"{n} {thing}" if n == 1 else f"{n} {thing}s"

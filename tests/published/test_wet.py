@@ -6,6 +6,7 @@ import numpy as np
 import pytest
 
 from renderer.optics.wet import diffuse_fresnel, wet_body_reflectance, wet_reflectance
+from tests.rendering import rendered
 
 
 # dry, wet, allowed; A. D. Matthias et al., Soil Sci. Soc. Am. J. 64, 1035 (2000), abstract: Gila sandy loam and Pima
@@ -42,3 +43,43 @@ def test_the_model_written_out_as_a_sum_over_crossings(dry):
     back = 1 - (1 - mean(film)) / film**2
     lost = sum((1 - mean(film)) * under * ((1 - under) * back) ** k for k in range(200)) if dry < 1 else 0.0
     assert float(wet_reflectance(dry)) == pytest.approx(1 - lost, abs=1e-6)
+
+
+def rendered_albedo(dry: float, surface: str) -> float:
+    """Share of light that a plane sends back, from pictures: under an even sky, its luminance weighted by the cosine.
+
+    Light from all round that leaves one way is light from that way that leaves all round.
+    """
+    points, weights = np.polynomial.legendre.leggauss(5)
+    total = 0.0
+    for cosine, weight in zip(0.5 * (points + 1.0), 0.5 * weights, strict=True):
+        up, along = 3.0 * cosine, 3.0 * np.sqrt(1.0 - cosine**2)
+        shot = PLANE.replace("POSITION", f"[0, {up}, {along}]").replace("SURFACE", surface.replace("DRY", str(dry)))
+        total += 2.0 * cosine * weight * rendered(shot, 64).mean / 1000.0
+    return total
+
+
+PLANE = """
+[camera]
+position = POSITION
+target = [0, 0, 0]
+focal_length = 2000
+pixels = [12, 12]
+[sky]
+kind = "uniform"
+[render]
+wavelengths = [550]
+[[objects]]
+name = "ground"
+shape = { box = [100, 0.1, 100] }
+surface = { SURFACE }
+transform = { translation = [0, -0.05, 0] }
+"""
+
+
+@pytest.mark.parametrize("dry", [0.1, 0.3, 0.6])
+def test_wet_over_dry_in_rendered_pictures(dry: float) -> None:
+    """J. Lekner and M. C. Dorf, Appl. Opt. 27, 1278 (1988), by the sum over crossings above."""
+    matt = "spectrum = [[400, DRY], [700, DRY]]"
+    ratio = rendered_albedo(dry, matt + ", wetness = 1") / rendered_albedo(dry, matt)
+    assert ratio == pytest.approx(float(wet_reflectance(dry)) / dry, rel=0.01)
