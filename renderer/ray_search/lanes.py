@@ -7,6 +7,7 @@ arithmetic is exact IEEE, never reordered or fused, so that edges shared by tria
 # ruff: noqa: I001
 from __future__ import annotations
 
+from collections.abc import Iterable
 from typing import Any
 
 from renderer.base.jit import kernel  # noqa: F401  (settles cache folder and processor level before numba is imported)
@@ -127,6 +128,16 @@ def written(builder: Any, pointer: Any) -> None:
     """Let the compiler believe that anything behind a pointer may have changed, so that it reads it from memory."""
     kind = ir.FunctionType(ir.VoidType(), [pointer.type])
     builder.call(ir.InlineAsm(kind, "", "r,~{memory}", side_effect=True), [pointer])
+
+
+def ask_for(builder: Any, pointer: Any, lines: Iterable[int]) -> None:
+    """Ask for lines of 64 bytes behind a pointer before they are needed."""
+    byte = I8.as_pointer()
+    kind = ir.FunctionType(ir.VoidType(), [byte, I32, I32, I32])
+    function = cgutils.get_or_insert_function(builder.module, kind, "llvm.prefetch.p0")
+    place = builder.bitcast(pointer, byte)
+    for line in lines:
+        builder.call(function, [builder.gep(place, [I64(64 * line)]), I32(0), I32(3), I32(1)])
 
 
 def row_behind(builder: Any, data: Any, row: Any, width: int) -> Any:
@@ -380,14 +391,9 @@ def prefetch(typing_context: Any, nodes: Any, packs: Any, child: Any) -> Any:
         node = builder.bitcast(row_behind(builder, args[0], args[2], NODE_WIDTH), byte)
         pack = builder.bitcast(row_behind(builder, args[1], builder.not_(args[2]), PACK_WIDTH), byte)
         inner = builder.icmp_signed(">=", args[2], I64(0))
-        place = builder.select(inner, node, pack)
-        kind = ir.FunctionType(ir.VoidType(), [byte, I32, I32, I32])
-        function = cgutils.get_or_insert_function(builder.module, kind, "llvm.prefetch.p0")
-        for line in range(4):
-            builder.call(function, [builder.gep(place, [I64(64 * line)]), I32(0), I32(3), I32(1)])
+        ask_for(builder, builder.select(inner, node, pack), range(4))
         with builder.if_then(builder.not_(inner)):
-            for line in range(4, 10):
-                builder.call(function, [builder.gep(place, [I64(64 * line)]), I32(0), I32(3), I32(1)])
+            ask_for(builder, pack, range(4, 10))
         return context.get_dummy_value()
 
     return types.void(NODES, PACKS, types.int64), generate
@@ -417,6 +423,7 @@ def triangles_hit(
 
     def generate(context: Any, builder: Any, signature: Any, args: Any) -> Any:
         numbers = row_behind(builder, args[0], args[1], PACK_WIDTH)
+        ask_for(builder, numbers, [9])  # whose triangles these are, which a hit will want at once
         axes = cgutils.unpack_tuple(builder, args[2], 3)
         origin = [splat(builder, value) for value in cgutils.unpack_tuple(builder, args[3], 3)]
         sx, sy, sz = (splat(builder, value) for value in cgutils.unpack_tuple(builder, args[4], 3))
@@ -456,6 +463,7 @@ def spheres_hit(typing_context: Any, balls: Any, pack: Any, ray: Any, least: Any
 
     def generate(context: Any, builder: Any, signature: Any, args: Any) -> Any:
         numbers = row_behind(builder, args[0], args[1], BALL_WIDTH)
+        ask_for(builder, numbers, [4])  # whose spheres these are
         written(builder, args[2])
 
         def of_ray(at: int) -> Lanes:
