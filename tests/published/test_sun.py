@@ -1,4 +1,4 @@
-"""The sun at the ground against ASTM G173, and the numbers of its disc."""
+"""What the air does to sunlight, and the numbers of the sun's disc."""
 
 from __future__ import annotations
 
@@ -8,50 +8,6 @@ import pytest
 from renderer.base.constants import LUMINOUS_EFFICACY
 from renderer.optics import atmosphere, sun
 from renderer.optics.tables import render_wavelengths_nm, table_column
-
-# ASTM G173-03 (SMARTS 2.9.2, NREL table), direct normal + circumsolar, summed over 20 nm from each edge, every nm from
-# the edge to the edge + 19 [W/m2]; zenith angle 48.19, ozone 0.3438 atm-cm, water 1.42 cm, aerosol 0.084 at 500
-G173 = {
-    380: 9.977,
-    400: 18.154,
-    420: 19.037,
-    440: 24.512,
-    460: 26.478,
-    480: 26.691,
-    500: 26.441,
-    520: 27.108,
-    540: 27.076,
-    560: 26.703,
-    580: 26.448,
-    600: 26.403,
-    620: 25.781,
-    640: 25.168,
-    660: 25.463,
-    680: 23.191,
-    700: 22.772,
-    720: 20.637,
-    740: 22.497,
-    760: 16.985,
-}
-
-
-def g173_air():
-    """The air of ASTM G173, its aerosol by an exponent between those of the standard's rural aerosol (from memory)."""
-    exponent = 1.1
-    return atmosphere.Air(
-        aerosol_depth_550=0.084 * (550 / 500) ** -exponent,
-        ozone_atm_cm=0.3438,
-        water_cm=1.42,
-        angstrom_exponent=exponent,
-    )
-
-
-@pytest.mark.parametrize(("edge_nm", "watts"), G173.items())
-def test_direct_sunlight_in_bands_of_20_nm(edge_nm, watts):
-    """Within 4 %, but 8 % from 760 nm, where the band model leaves too much between its points of oxygen's A band."""
-    band = np.arange(edge_nm, edge_nm + 20.0)
-    got = sun.beam_irradiance(band, 90 - 48.19, g173_air()).sum()
-    assert got == pytest.approx(watts, rel=0.08 if edge_nm == 760 else 0.04)
 
 
 def test_rayleigh_depth():
