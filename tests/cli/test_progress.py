@@ -61,9 +61,9 @@ def test_a_long_frame_gets_a_line_every_few_seconds(
 def test_a_terminal_gets_a_bar_that_is_taken_away(capsys: pytest.CaptureFixture[str]) -> None:
     run_of_a_frame(Follow(Terminal(), 1))
     said = capsys.readouterr().err
-    assert "[############################] 8/8 rounds" in said
+    assert "[############################] 8 of 8 rounds" in said
     assert said.splitlines()[-1].endswith("frame 1001: 8 rounds in 2.0 s")
-    assert said.rindex("\r") > said.rindex("8/8 rounds")
+    assert said.rindex("\r") > said.rindex("8 of 8 rounds")
 
 
 def test_json_lines_carry_every_fact_and_nothing_else_is_said(capsys: pytest.CaptureFixture[str]) -> None:
