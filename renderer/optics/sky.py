@@ -3,8 +3,8 @@
 Where the light stands: luminance by ISO 15469:2004 (CIE S 011/E:2003). How much there is: Bird & Riordan 1986 for clear
 skies, Krochmann & Seidl 1974 for overcast ones. Its colour in a clear sky: once-scattered sunlight of air and aerosol
 with a term for the rest, scaled so that the spectrum on level ground is Bird & Riordan's and the luminance in every
-direction ISO's. Below the horizon the map holds level ground of one grey reflectance, lit by this sun and sky.
-Unpolarised. Rows and columns are those of `renderer.arrays.lights.Sky`.
+direction ISO's; in air without aerosol, as it is. Below the horizon the map holds level ground of one grey
+reflectance, lit by this sun and sky. Unpolarised. Rows and columns are those of `renderer.arrays.lights.Sky`.
 """
 
 from __future__ import annotations
@@ -22,6 +22,8 @@ from renderer.optics.atmosphere import (
     Air,
     aerosol_depth,
     air_over,
+    gas_transmittance,
+    ozone_air_mass,
     ozone_depth,
     rayleigh_depth,
     relative_air_mass,
@@ -41,6 +43,7 @@ Floats = npt.NDArray[np.float64]
 
 N_ROWS, N_COLUMNS = 181, 360  # one a degree
 NODES_NM = np.array([380.0, 430.0, 490.0, 560.0, 650.0, 780.0])  # between them a sky's tint is a straight line
+AEROSOL_OF_ISO = 0.05  # optical depth at 550 nm from which ISO's patterns hold; the cleanest air over land, our choice
 LOWEST_SUN_DEG = -12.0  # nautical twilight; below it no published luminance is carried
 
 # ISO 15469:2004 table 1: a, b of the gradation and c, d, e of the indicatrix, types 1, 12 and 13 (from memory)
@@ -111,7 +114,7 @@ def haze_share(air: Air) -> float:
 
 
 def once_scattered(air: Air, sun_deg: float, cos_chi: Floats, masses: Floats, diffuse: Floats) -> Floats:
-    """Tint of a clear sky: radiance over the sunlight above the air, (n_rows, n_columns, n_nodes), any scale.
+    """Radiance of a clear sky over the sunlight above the air, (n_rows, n_columns, n_nodes) [sr^-1]; no absorption.
 
     Sunlight that air and aerosol scatter once in plane-parallel layers, air after Rayleigh and aerosol after Henyey and
     Greenstein (Astrophys. J. 93, 70 (1941)), and what is scattered again, as of an even glow of `diffuse` irradiance
@@ -163,6 +166,18 @@ def clear_sky(
     """
     checked_sun(sun_elevation_deg, ground_reflectance)
     air, sun_deg = air_over(visibility_km, height_m), max(sun_elevation_deg, 0.0)
+    coefficients, basis = clear_sky_through(air, sun_deg, sun_azimuth_deg, ground_reflectance)
+    return coefficients * twilight_factor(sun_elevation_deg), basis
+
+
+def clear_sky_through(
+    air: Air, sun_deg: float, sun_azimuth_deg: float, ground_reflectance: float
+) -> tuple[Floats, Floats]:
+    """`clear_sky` for any air and an apparent sun elevation of 0 to 90 degrees.
+
+    ISO's patterns were measured in air with aerosol. With less of it than AEROSOL_OF_ISO the sky goes over into what
+    scattering alone makes, which is the whole of it in pure air.
+    """
     grid = render_wavelengths_nm()
     beam = beam_irradiance(grid, sun_deg, air)
     diffuse = diffuse_irradiance(grid, sun_deg, air, beam, ground_reflectance)
@@ -177,10 +192,23 @@ def clear_sky(
     pattern = pattern * lumens.sum() / from_level_irradiance(pattern[:, :, None], weights)[0]
     masses = np.array([relative_air_mass(max(row, 0.0)) for row in rows_deg()])
     at_nodes = between_lines(NODES_NM, grid, diffuse / irradiance_above_air(grid))
-    coefficients = balanced(once_scattered(air, sun_deg, cos_chi, masses, at_nodes), pattern, lumens, weights)
-    ground = ground_reflectance / np.pi * (1.0 + between_lines(NODES_NM, grid, beam * sun_sine / diffuse))
+    scattered = once_scattered(air, sun_deg, cos_chi, masses, at_nodes)
+    coefficients = balanced(scattered, pattern, lumens, weights)
+    level: Floats | float = 1.0
+    share = min(air.aerosol_depth_550 / AEROSOL_OF_ISO, 1.0)
+    if share < 1.0:
+        physical = scattered * absorbed(air, sun_deg) / at_nodes
+        level = share + (1.0 - share) * from_level_irradiance(physical, weights)
+        coefficients = share * coefficients + (1.0 - share) * physical
+    ground = ground_reflectance / np.pi * (level + between_lines(NODES_NM, grid, beam * sun_sine / diffuse))
     coefficients[sine < 0.0] = ground
-    return coefficients * twilight_factor(sun_elevation_deg), basis
+    return coefficients, basis
+
+
+def absorbed(air: Air, sun_deg: float) -> Floats:
+    """What ozone and gases leave of sunlight on its way down, at the nodes (n_nodes,)."""
+    ozone = exponential(-ozone_depth(NODES_NM, air.ozone_atm_cm) * ozone_air_mass(sun_deg))
+    return np.asarray(ozone * gas_transmittance(NODES_NM, air, relative_air_mass(sun_deg)))
 
 
 def clear_pattern(air: Air, sine: Floats, cos_chi: Floats) -> Floats:
