@@ -85,11 +85,16 @@ def aerosol_depth(wavelength_nm: npt.ArrayLike, depth_550: float, exponent: floa
 def gas_transmittance(wavelength_nm: npt.ArrayLike, air: Air, air_mass: float) -> Floats:
     """Transmittance of water vapour and mixed gases (oxygen), whose unresolved lines do not follow Beer's law.
 
-    R. Bird and C. Riordan, J. Clim. Appl. Meteorol. 25, 87 (1986), between its 37 bands by straight lines.
+    R. Bird and C. Riordan, J. Clim. Appl. Meteorol. 25, 87 (1986), between its 37 bands by straight lines; oxygen's A
+    band, 757 to 780 nm, from its lines (`tools/oxygen_band.py`).
     """
     at = table_column("gas_bands.csv", "wavelength_nm")
     water = between_lines(wavelength_nm, at, table_column("gas_bands.csv", "water")) * air.water_cm * air_mass
     mixed = between_lines(wavelength_nm, at, table_column("gas_bands.csv", "mixed"))
+    band_nm = table_column("oxygen_a_band.csv", "wavelength_nm")
+    band = between_lines(wavelength_nm, band_nm, table_column("oxygen_a_band.csv", "mixed"))
+    within = (np.asarray(wavelength_nm) >= band_nm[0]) & (np.asarray(wavelength_nm) <= band_nm[-1])
+    mixed = np.where(within, band, mixed)
     mixed = mixed * air_mass * (air.pressure_hpa / STANDARD_PRESSURE_HPA)
     vapour = exponential(-0.2385 * water / power(1.0 + 20.07 * water, 0.45))
     return np.asarray(vapour * exponential(-1.41 * mixed / power(1.0 + 118.93 * mixed, 0.45)))

@@ -49,20 +49,28 @@ def modelled(elevation_deg, aerosol_500):
 
 
 def test_direct_beam_of_astm_g173_in_every_band_of_20_nm():
-    """ASTM G173-03, direct normal and circumsolar, as pvlib carries it: 380 to 780 nm within 5 %, save one.
+    """ASTM G173-03, direct normal and circumsolar, as pvlib carries it: 380 to 780 nm within 5 %.
 
-    Zenith angle 48.19 degrees, aerosol 0.084 at 500 nm, ozone 0.3438 atm-cm, water 1.42 cm. 15 of the 20 bands are
-    within 2 %; the last holds oxygen's A band, of which the band model's few points leave too much (5.01 %).
+    At every start of a band in whole nanometres. Zenith angle 48.19 degrees, aerosol 0.084 at 500 nm, ozone 0.3438
+    atm-cm, water 1.42 cm.
     """
     table = spectrum.get_reference_spectra(standard="ASTM G173-03")
-    edges = np.arange(380.0, 781.0, 20.0)
-    wanted = band_means(table.index.values, table["direct"].values, edges)
     grid = np.linspace(380.0, 780.0, 4001)
-    got = band_means(grid, sun.beam_irradiance(grid, 90.0 - 48.19, air_of(0.084)), edges)
-    off = got / wanted - 1.0
-    assert np.abs(off[:-1]).max() < 0.05
-    assert abs(off[-1]) < 0.052
-    assert (np.abs(off) < 0.02).sum() >= 15
+    beam = sun.beam_irradiance(grid, 90.0 - 48.19, air_of(0.084))
+    for first in range(380, 400):
+        edges = np.arange(float(first), 781.0, 20.0)
+        wanted = band_means(table.index.values, table["direct"].values, edges)
+        assert band_means(grid, beam, edges) == pytest.approx(wanted, rel=0.05)
+
+
+def test_oxygen_band_of_astm_g173():
+    """What oxygen's A band takes from the standard's beam, in nanometres of it: within 7 %, by lines of our own."""
+    table = spectrum.get_reference_spectra(standard="ASTM G173-03")
+    at = np.arange(757.0, 773.0)
+    left = (table["direct"] / table["extraterrestrial"]).loc[757.0:772.0].to_numpy()
+    taken = (1.0 - left / np.linspace(left[0], left[-1], len(left))).sum()
+    dry = atmosphere.Air(aerosol_depth_550=0.0, water_cm=0.0)
+    assert (1.0 - atmosphere.gas_transmittance(at, dry, 1.5)).sum() == pytest.approx(taken, rel=0.07)
 
 
 @pytest.mark.parametrize("aerosol_500", AEROSOL_500)
@@ -70,10 +78,11 @@ def test_direct_beam_of_astm_g173_in_every_band_of_20_nm():
 def test_transmittance_of_the_beam_by_spectrl2(elevation_deg, within, aerosol_500):
     """At each of the model's wavelengths; its authors found about 5 % against line-by-line codes (from memory).
 
-    What is left is Rayleigh scattering after Bodhaine 1999 and ozone after JPL 2006 in place of older fits.
+    What is left is Rayleigh scattering after Bodhaine 1999 and ozone after JPL 2006 in place of older fits. Oxygen's A
+    band, of which the model has two points, is held to ASTM G173 instead.
     """
     wavelength, above, beam, _ = modelled(elevation_deg, aerosol_500)
-    seen = (wavelength >= 380.0) & (wavelength <= 780.0)
+    seen = (wavelength >= 380.0) & (wavelength <= 780.0) & (np.abs(wavelength - 763.0) > 6.0)
     ours = atmosphere.beam_transmittance(wavelength[seen], air_of(aerosol_500), elevation_deg)
     assert ours == pytest.approx((beam / above)[seen], rel=within)
 
@@ -93,15 +102,18 @@ def test_light_of_a_high_sun_by_spectrl2(elevation_deg, aerosol_500):
 def check_light(elevation_deg, beam_within, sky_within, aerosol_500):
     """Beam and sky in bands of 40 nm, over which the 10 nm steps of the model's own sunlight even out.
 
-    The sky at 5 degrees is 5 to 12 % brighter: `skylight` takes 1 / air mass in place of the sine, which is 11 % more
-    there, and does not vanish on the horizon. The authors' own spread for diffuse light is about 10 % (from memory).
+    The last band holds oxygen's A band, of which the model takes a fifth less; 6 % there. The sky at 5 degrees is 5 to
+    12 % brighter: `skylight` takes 1 / air mass in place of the sine, which is 11 % more there, and does not vanish on
+    the horizon. The authors' own spread for diffuse light is about 10 % (from memory).
     """
     wavelength, _, beam, diffuse = modelled(elevation_deg, aerosol_500)
     edges, grid, air = np.arange(380.0, 781.0, 40.0), np.linspace(370.5, 789.5, 2096), air_of(aerosol_500)
     ours = sun.beam_irradiance(grid, elevation_deg, air)
     sky = skylight.diffuse_irradiance(grid, elevation_deg, air, ours, 0.2)
-    assert band_means(grid, ours, edges) == pytest.approx(band_means(wavelength, beam, edges), rel=beam_within)
-    assert band_means(grid, sky, edges) == pytest.approx(band_means(wavelength, diffuse, edges), rel=sky_within)
+    for got, wanted, within in ((ours, beam, beam_within), (sky, diffuse, sky_within)):
+        off = band_means(grid, got, edges) / band_means(wavelength, wanted, edges) - 1.0
+        assert np.abs(off[:-1]).max() < within
+        assert abs(off[-1]) < max(within, 0.06)
 
 
 def test_day_of_the_comparison():
