@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import colour
 import numpy as np
 import pytest
 
@@ -88,7 +89,6 @@ def chromaticity(spectrum, observer):
 @pytest.fixture(scope="module")
 def observer():
     """CIE 1931 observer, (401, 3), from colour-science (CIE 018:2019)."""
-    colour = pytest.importorskip("colour")
     return colour.MSDS_CMFS["CIE 1931 2 Degree Standard Observer"].align(colour.SpectralShape(380, 780, 1)).values
 
 
