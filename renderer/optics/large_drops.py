@@ -44,7 +44,8 @@ AIRY_FROM, TABLE_STEP = -12.0, 0.002
 SMALLEST_SINE = 1e-5
 FILLED = 0.9962  # the disc's amplitude straight on gains this times x^(-2/3) from rays that graze (van de Hulst 17.26)
 EDGE_FILE = "drop_edges.csv"  # what rays leave out, fitted to the full series
-EDGE_INDEX = 1.333  # of the drops it was fitted to
+EDGE_INDICES = (1.331, 1.345)  # of the drops it was fitted to: water in red and in violet
+EDGE_INDEX = 1.333  # whose angles the table counts in
 
 
 @dataclass(frozen=True)
@@ -55,11 +56,12 @@ class RayTable:
     order and way round at each angle: `place` in the angles; `zeta`, `p` (2, m), `q` (2, m) of the uniform
     approximation (zeta is infinite where there is one ray only); `by_rays` (3, m); `ring` (m,): u = x ring on the axis,
     infinite where no ring of rays meets; `side`: +1 straight on, -1 back. `warped_deg` (n,): where `edge_light` is
-    looked up.
+    looked up, and `violet` how far from its first index to its second.
     """
 
     angles_rad: Floats
     warped_deg: Floats
+    violet: float
     rays: Floats
     place: Ints
     zeta: Floats
@@ -154,24 +156,26 @@ def edge_weight(angles_rad: Floats, x: float) -> Floats:
 
 @cache
 def edge_table() -> tuple[Floats, Floats, Floats]:
-    """Logarithms of sizes (k,), angles [deg] (a,), and edge light over `edge_weight` (k, 4, a)."""
+    """Logarithms of sizes (k,), angles [deg] (a,), and edge light over `edge_weight` (2, k, 4, a)."""
     rows = np.loadtxt(io.StringIO(table_text(EDGE_FILE)), delimiter=",", comments="#")
-    sizes = np.unique(rows[1:, 0])
-    inner = rows[1:, 2:].reshape(len(sizes), 4, -1)
+    sizes = np.unique(rows[1:, 1])
+    inner = rows[1:, 3:].reshape(len(EDGE_INDICES) * len(sizes), 4, -1)
     table = np.concatenate([inner[:, :, :1], inner, inner[:, :, -1:]], axis=2)
     for end, sign in ((0, 1.0), (-1, -1.0)):  # on the axis nothing tells the polarisations apart
         even = 0.5 * (table[:, 0, end] + table[:, 1, end])
         table[:, 0, end], table[:, 1, end], table[:, 2, end], table[:, 3, end] = even, even, sign * even, 0.0
-    return np.log(sizes), np.concatenate([[0.0], rows[0, 2:], [180.0]]), table
+    return np.log(sizes), np.concatenate([[0.0], rows[0, 3:], [180.0]]), table.reshape(2, len(sizes), 4, -1)
 
 
 def edge_light(rays: RayTable, x: float) -> Floats:
     """Light from rays that graze the drop, and waves that creep round it (4, n): |S1|^2, |S2|^2, Re and Im of S2 S1*.
 
-    Fitted, not derived, to the full series for index 1.333 and 300 < x < 6000; angles are scaled by 2 acos(1/n), at
-    whose multiples rays that graze come out. Beyond its range the nearest size serves, where it is little.
+    Fitted, not derived, to the full series for the indices of water and 300 < x < 6000; angles are scaled by
+    2 acos(1/n), at whose multiples rays that graze come out. Beyond its range the nearest size serves, where it is
+    little.
     """
-    sizes, angles, table = edge_table()
+    sizes, angles, tables = edge_table()
+    table = (1.0 - rays.violet) * tables[0] + rays.violet * tables[1]
     place = float(np.clip(np.interp(math.log(x), sizes, np.arange(len(sizes))), 0.0, len(sizes) - 1.0))
     low = min(int(place), len(sizes) - 2)
     values = table[low] + (place - low) * (table[low + 1] - table[low])
@@ -251,11 +255,13 @@ def ray_table(index: float, angles_deg: Floats, orders: int = ORDERS) -> RayTabl
             total[:3] += np.stack([np.bincount(part[0].astype(np.int64), row, len(angles)) for row in part[6:9]])
             parts.append(part)
     rows = np.concatenate([np.stack(part) for part in parts], axis=1)
+    red_end, violet_end = EDGE_INDICES
+    violet = float(np.clip((index - red_end) / (violet_end - red_end), -0.3, 1.3))
     warp = math.acos(1.0 / EDGE_INDEX) / math.acos(1.0 / index)
     warped = warp * np.degrees(angles)
     warped = np.where(angles < math.radians(165.0) / warp, warped, scaled_back(np.degrees(angles), 165.0 / warp))
-    return RayTable(angles, warped, total, rows[0].astype(np.int64), rows[1], rows[2:4], rows[4:6], rows[6:9], rows[9],
-                    rows[10])  # fmt: skip
+    return RayTable(angles, warped, violet, total, rows[0].astype(np.int64), rows[1], rows[2:4], rows[4:6], rows[6:9],
+                    rows[9], rows[10])  # fmt: skip
 
 
 def scaled_back(angles_deg: Floats, start: float) -> Floats:
